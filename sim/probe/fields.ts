@@ -1,0 +1,303 @@
+/**
+ * Every field of a probe file, described once. A name ends in its unit (`bandwidth_kHz`); a number without a unit in
+ * its name is a pure number. `Probe` is the type of a file after validation, with every default filled in.
+ */
+import { choice, code, flag, group, list, number, text, variant, type Of } from './describe.ts';
+
+const MAX_TIME_MS = 3_600_000;
+
+const core = group('gapped magnetic core around the conductor (linear)', {
+  gap_mm: number('length of the air gap that holds the sensor', { unit: 'mm', min: 0, aboveMin: true, max: 100, toleranced: true }),
+  path_mm: number('length of the magnetic path inside the core', { unit: 'mm', min: 0, aboveMin: true, max: 2000, toleranced: true }),
+  permeability: number('relative permeability of the core material', { unit: '', min: 1, max: 1e6, toleranced: true }),
+  turns: number('how often the conductor passes through the core', { unit: '', min: 1, max: 1000, integer: true, preset: 1 }),
+});
+
+const sensor = group('linear Hall sensor in the gap', {
+  sensitivity_mV_per_mT: number('output change per field at 25 °C and nominal supply', { unit: 'mV/mT', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+  sensitivityDrift_ppm_per_K: number('change of sensitivity with temperature', { unit: 'ppm/K', min: -20000, max: 20000, toleranced: true, preset: 0 }),
+  rest_V: number('output without field at 25 °C and nominal supply', { unit: 'V', min: 0, max: 100, toleranced: true }),
+  restDrift_mV_per_K: number('change of the rest output with temperature', { unit: 'mV/K', min: -100, max: 100, toleranced: true, preset: 0 }),
+  ratiometric: flag('rest output and sensitivity scale with the supply', false),
+  swingLow_V: number('lowest output the sensor reaches', { unit: 'V', min: 0, max: 100, preset: 0.2 }),
+  swingHigh_V: number('highest output the sensor reaches', { unit: 'V', min: 0, aboveMin: true, max: 100, preset: 4.8 }),
+  bandwidth_kHz: number('-3 dB corner of the sensor (one pole)', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+  noise_uT_per_rtHz: number('white noise density referred to the field', { unit: 'µT/√Hz', min: 0, max: 1000, preset: 0 }),
+  bias: choice('how the bias of the Hall plate is switched, for a chain that demodulates', ['steady', 'reversal', 'quarter turn'], 'steady'),
+  biasPhase_samples: number('A/D samples in one phase of a switched bias', { unit: 'samples', min: 2, max: 65536, integer: true, preset: 32 }),
+  plateOffset_mT: number('offset of the plate itself, referred to the field; part of rest_V when the bias is steady', { unit: 'mT', min: -100, max: 100, toleranced: true, preset: 0 }),
+});
+
+const amplifier = group('amplifier between sensor and A/D converter, around a virtual ground', {
+  gain: number('voltage gain', { unit: '', min: -1e4, max: 1e4, toleranced: true }),
+  virtualGround_V: number('the voltage that the amplifier keeps in place', { unit: 'V', min: 0, max: 100 }),
+  offset_mV: number('input offset voltage', { unit: 'mV', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  railLow_V: number('lowest output', { unit: 'V', min: -100, max: 100, preset: 0 }),
+  railHigh_V: number('highest output', { unit: 'V', min: -100, max: 100, preset: 5 }),
+  bandwidth_kHz: number('-3 dB corner (one pole), also the anti-alias filter', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+});
+
+const converter = group('A/D converter', {
+  bits: number('resolution', { unit: 'bits', min: 6, max: 24, integer: true }),
+  rate_kHz: number('samples a second', { unit: 'kHz', min: 0.001, max: 10000 }),
+  reference: choice('what sets its full scale', ['fixed', 'supply'], 'fixed'),
+  reference_V: number('full scale at nominal supply', { unit: 'V', min: 0.1, max: 100, toleranced: true }),
+  format: choice('how a code is written', ['offset binary', "two's complement"], 'offset binary'),
+  justified: choice('where the code stands in its word', ['right', 'left'], 'right'),
+  word_bits: number('width of the word that holds a code', { unit: 'bits', min: 8, max: 32, integer: true, preset: 16 }),
+  noise_codes: number('noise of the converter, standard deviation', { unit: 'codes', min: 0, max: 1000, preset: 0 }),
+});
+
+const thermometer = group('thermometer beside the sensor, read by the firmware', {
+  element: choice('what senses the temperature', ['thermistor', 'platinum', 'linear'], 'thermistor'),
+  resistance_ohm: number('resistance at 25 °C of a thermistor, at 0 °C of a platinum element', { unit: 'Ω', min: 1, max: 1e7, toleranced: true, preset: 10000 }),
+  beta_K: number('beta of a thermistor', { unit: 'K', min: 1000, max: 10000, toleranced: true, preset: 3435 }),
+  series_ohm: number('resistor from the reference to the element', { unit: 'Ω', min: 1, max: 1e7, preset: 10000 }),
+  slope_mV_per_K: number('slope of a linear element', { unit: 'mV/K', min: -1000, max: 1000, preset: 10 }),
+  at25_V: number('output of a linear element at 25 °C', { unit: 'V', min: 0, max: 100, preset: 0.75 }),
+  reference_V: number('full scale of its converter', { unit: 'V', min: 0.1, max: 100, preset: 3.3 }),
+  bits: number('resolution of its converter', { unit: 'bits', min: 6, max: 24, integer: true, preset: 12 }),
+  every_ms: number('time between two temperature codes', { unit: 'ms', min: 0.01, max: 60000, preset: 100 }),
+}, 'absent');
+
+const start = choice('state at the first sample: as if that sample had always been there, or all zero', ['primed', 'zero'], 'primed');
+
+const stage = variant('one stage of the chain, in engineering units', 'stage', {
+  intake: {
+    midCode: number('code that stands for zero current; left out: the nominal rest of the hardware', { unit: 'codes', min: -8388608, max: 16777215, integer: true, preset: null }),
+    guardBits: number('fraction bits that counts carry behind the code', { unit: 'bits', min: 0, max: 20, integer: true, preset: 8 }),
+  },
+  overRange: {
+    highCode: number('codes from here up are the rail; left out: the highest code', { unit: 'codes', min: -8388608, max: 16777215, integer: true, preset: null }),
+    lowCode: number('codes from here down are the rail; left out: the lowest code', { unit: 'codes', min: -8388608, max: 16777215, integer: true, preset: null }),
+    consecutive: number('codes in a row at a rail that trip it', { unit: 'samples', min: 1, max: 65535, integer: true, preset: 1 }),
+    limit_A: number('current beyond which the sensor is over range; left out: no such limit', { unit: 'A', min: 0, aboveMin: true, max: 1e6, preset: null }),
+    slew_A_per_ms: number('change beyond which the sensor is over range; left out: no such limit', { unit: 'A/ms', min: 0, aboveMin: true, max: 1e9, preset: null }),
+    hold_ms: number('time that the analog side needs to recover', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 1 }),
+    stuckAfter_samples: number('identical codes in a row that mean a stuck converter; 0: not watched', { unit: 'samples', min: 0, max: 1e6, integer: true, preset: 0 }),
+  },
+  despike: {
+    window_samples: number('window of the running median: 3 or 5', { unit: 'samples', min: 3, max: 5, integer: true, preset: 3 }),
+    start,
+  },
+  demodulate: {
+    bias: choice('what the bias does: polarity reversal, or a turn by quarters', ['reversal', 'quarter turn'], 'reversal'),
+    blank_samples: number('samples left out after each switch', { unit: 'samples', min: 0, max: 65535, integer: true, preset: 4 }),
+    longestPhase_samples: number('a phase longer than this means that the bias does not switch', { unit: 'samples', min: 1, max: 1e6, integer: true, preset: 4096 }),
+  },
+  decimate: {
+    order: number('order of the integrator-comb; 1 is the boxcar', { unit: '', min: 1, max: 5, integer: true, preset: 2 }),
+    ratio: number('samples in for one sample out', { unit: '', min: 2, max: 65536, integer: true }),
+    start,
+  },
+  thermometer: {
+    timeConstant_s: number('low-pass of the temperature; 0: none', { unit: 's', min: 0, max: 3600, preset: 0 }),
+    hold_s: number('how long the last good temperature stands in for a broken thermometer', { unit: 's', min: 0, max: 3600, preset: 1 }),
+    fallback_C: number('temperature assumed after that', { unit: '°C', min: -100, max: 300, preset: 25 }),
+    lowest_C: number('colder codes mean a broken thermometer', { unit: '°C', min: -100, max: 300, preset: -40 }),
+    highest_C: number('warmer codes mean a broken thermometer', { unit: '°C', min: -100, max: 300, preset: 125 }),
+  },
+  offsetTrim: {
+    table: list('offset over temperature, referred to the current; left out: the nominal drift of the hardware', group('one point', {
+      at_C: number('temperature', { unit: '°C', min: -100, max: 300 }),
+      offset_A: number('reading at zero current', { unit: 'A', min: -1e6, max: 1e6 }),
+    }), { max: 16, optional: true }),
+  },
+  zero: {
+    atStart: flag('take a zero at start-up', false),
+    settle_ms: number('wait before that zero', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 20 }),
+    mean_ms: number('time over which a zero is averaged', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS, preset: 100 }),
+    span_A: number('largest peak-to-peak during a zero; more is refused', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+    window_A: number('largest distance of a zero from the factory zero; more is refused', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+    onButton: flag('take a zero on the zero event', true),
+    tracking: flag('follow slow drift', false),
+    trackWindow_A: number('tracking only within this distance of the factory zero', { unit: 'A', min: 0, max: 1e6, preset: 0.1 }),
+    trackHold_s: number('time within the window before tracking starts', { unit: 's', min: 0, max: 3600, preset: 2 }),
+    trackRate_A_per_s: number('fastest tracking', { unit: 'A/s', min: 0, max: 1e6, preset: 0.001 }),
+    trackAuthority_A: number('the most that tracking may remove', { unit: 'A', min: 0, max: 1e6, preset: 0.02 }),
+    suspectAfterOverload: flag('an over-range makes the zero suspect until it is taken anew or the core degaussed', true),
+  },
+  gainTrim: {
+    table: list('reading over truth at a temperature; left out: the nominal drift of the hardware', group('one point', {
+      at_C: number('temperature', { unit: '°C', min: -100, max: 300 }),
+      gain: number('reading divided by true current', { unit: '', min: 0.5, max: 2 }),
+    }), { max: 16, optional: true }),
+  },
+  linearise: {
+    table: list('what the chain reads against what is true, ascending', group('one point', {
+      reads_A: number('reading without this stage', { unit: 'A', min: -1e6, max: 1e6 }),
+      is_A: number('true current', { unit: 'A', min: -1e6, max: 1e6 }),
+    }), { min: 2, max: 64 }),
+    segments_log2: number('segments of the grid, as a power of two', { unit: '', min: 1, max: 8, integer: true, preset: 5 }),
+    beyond: choice('beyond the ends: hold the last value, or go on with the last slope', ['hold', 'slope'], 'slope'),
+  },
+  sections: {
+    filter: choice('shape of the filter', ['low-pass', 'high-pass', 'notch'], 'low-pass'),
+    corner_Hz: number('-3 dB corner; for a notch its centre', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7 }),
+    order: number('order of a low-pass or high-pass (Butterworth)', { unit: '', min: 1, max: 8, integer: true, preset: 2 }),
+    width_Hz: number('-3 dB width of a notch', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7, preset: null }),
+    errorFeedback: number('order of the error feedback', { unit: '', min: 0, max: 2, integer: true, preset: 2 }),
+    fractionBits: number('fraction bits of the coefficients; left out: as many as fit', { unit: 'bits', min: 8, max: 30, integer: true, preset: null }),
+    start,
+  },
+  average: {
+    length_ms: number('length of the running mean', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    start,
+  },
+  scale: {
+    unit: choice('unit of the reading; auto: µA when full scale fits with a factor of two to spare, mA otherwise', ['auto', 'µA', 'mA'], 'auto'),
+  },
+  meter: {
+    name: text('name by which requirements call it', 'meter'),
+    window_ms: number('length of a window, or time-out of a window of whole cycles', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    cycles: number('whole cycles in a window; 0: fixed windows', { unit: 'cycles', min: 0, max: 65535, integer: true, preset: 0 }),
+    hysteresis_A: number('distance from the mean that a crossing must reach', { unit: 'A', min: 0, max: 1e6, preset: 0.1 }),
+  },
+  custom: {
+    name: text('name of a stage of your own'),
+    version: number('its version', { unit: '', min: 1, max: 65535, integer: true }),
+    words: list('its constants', number('one constant', { unit: '', min: -2147483648, max: 2147483647, integer: true }), { max: 256, optional: true }),
+    make: code('function (words, unit) that returns the stage; only in a probe file written in JavaScript'),
+  },
+}, {
+  intake: 'raw codes to signed counts',
+  overRange: 'over-range, rail and stuck-code watch on undisturbed samples; directly behind intake',
+  despike: 'running median',
+  demodulate: 'demodulation of a switched bias',
+  decimate: 'integrator-comb decimator',
+  thermometer: 'temperature code to temperature, for the trims behind it',
+  offsetTrim: 'offset correction over temperature',
+  zero: 'zero at start-up, on the button, and tracking',
+  gainTrim: 'gain correction, with temperature',
+  linearise: 'piecewise-linear correction',
+  sections: 'second-order sections',
+  average: 'running mean',
+  scale: 'counts to µA or mA',
+  meter: 'mean, RMS and peaks over windows; leaves the samples unchanged',
+  custom: 'a stage of your own',
+});
+
+const currentLevel = (meaning: string) => number(meaning, { unit: 'A', min: -1e6, max: 1e6 });
+const currentLevelOr = (meaning: string, preset: number) => number(meaning, { unit: 'A', min: -1e6, max: 1e6, preset });
+const frequency = number('frequency', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7 });
+const edge = number('duration of an edge from level to level', { unit: 'µs', min: 0, max: 1e9, preset: 1 });
+
+const current = variant('the current in the conductor', 'shape', {
+  dc: { level_A: currentLevel('current') },
+  staircase: {
+    levels_A: list('the levels in turn', currentLevel('one level'), { min: 1, max: 1000 }),
+    hold_ms: number('time on each level', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    edge_us: edge,
+  },
+  sine: {
+    peak_A: currentLevel('amplitude'),
+    frequency_Hz: frequency,
+    offset_A: currentLevelOr('direct current below it', 0),
+    phase_deg: number('phase at the start', { unit: '°', min: -360, max: 360, preset: 0 }),
+  },
+  pwm: {
+    low_A: currentLevelOr('current while off', 0),
+    high_A: currentLevel('current while on'),
+    frequency_Hz: frequency,
+    duty_percent: number('share of the period while on, between the middles of the edges', { unit: '%', min: 0, max: 100 }),
+    edge_us: edge,
+  },
+  step: {
+    from_A: currentLevelOr('current before', 0),
+    to_A: currentLevel('current after'),
+    at_ms: number('when the edge starts', { unit: 'ms', min: 0, max: MAX_TIME_MS }),
+    edge_us: edge,
+  },
+  file: {
+    path: text('CSV file with time and current, beside the probe file'),
+    timeColumn: text('heading of the time column; empty: the first column', ''),
+    currentColumn: text('heading of the current column; empty: the second column', ''),
+    timeUnit: choice('unit of the time column where its heading names none', ['s', 'ms', 'µs', 'ns'], 's'),
+    currentUnit: choice('unit of the current column where its heading names none', ['A', 'mA', 'µA', 'kA'], 'A'),
+  },
+}, {
+  dc: 'steady current',
+  staircase: 'levels in turn',
+  sine: 'sine, with or without direct current',
+  pwm: 'pulse-width modulated current with finite edges',
+  step: 'one step',
+  file: 'a recorded current',
+});
+
+const event = group('something that happens during a scenario', {
+  at_ms: number('when it begins', { unit: 'ms', min: 0, max: MAX_TIME_MS }),
+  for_ms: number('how long it lasts', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 10 }),
+  event: choice('what', ['zero button', 'sticky clear', 'degaussed', 'power cycle']),
+});
+
+const scenario = group('one run of the probe', {
+  name: text('name by which requirements call it'),
+  about: text('what it is there to show', ''),
+  current,
+  duration_ms: number('length of the run', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+  judgeFrom_ms: number('readings before this are not judged', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 0 }),
+  temperature_C: number('temperature of the whole probe', { unit: '°C', min: -100, max: 200, preset: 25 }),
+  supply_V: number('supply during the run; left out: the nominal supply', { unit: 'V', min: 0.5, max: 100, preset: null }),
+  events: list('events, in any order', event, { max: 1000, optional: true }),
+});
+
+const scenarioName = text('the scenario it is measured in');
+const meterName = text('the meter it is read from', 'meter');
+const allowance = {
+  percentOfReading: number('allowed error, share of the true value', { unit: '%', min: 0, max: 1000, preset: 0 }),
+  percentOfRange: number('allowed error, share of the nominal range', { unit: '%', min: 0, max: 1000, preset: 0 }),
+  amperes: number('allowed error, fixed part', { unit: 'A', min: 0, max: 1e6, preset: 0 }),
+};
+
+const requirement = variant('what the probe must hold', 'measure', {
+  reading: { scenario: scenarioName, ...allowance },
+  mean: { scenario: scenarioName, meter: meterName, ...allowance },
+  trueRms: { scenario: scenarioName, meter: meterName, ...allowance },
+  acRms: { scenario: scenarioName, meter: meterName, ...allowance },
+  noise: { scenario: scenarioName, limit_A: number('allowed standard deviation of the reading at a steady current', { unit: 'A', min: 0, max: 1e6 }) },
+  settling: {
+    scenario: scenarioName,
+    band_percent: number('settled within this share of the step', { unit: '%', min: 0, aboveMin: true, max: 100, preset: 1 }),
+    limit_ms: number('allowed time from the middle of the step', { unit: 'ms', min: 0, max: MAX_TIME_MS }),
+  },
+  swallowed: { limit_A: number('largest direct current that all automatic zeroing together may remove', { unit: 'A', min: 0, max: 1e6 }) },
+}, {
+  reading: 'every unflagged reading against the true current, delayed as the chain states',
+  mean: 'mean of each meter window against the mean of the true current',
+  trueRms: 'true RMS of each meter window against that of the true current',
+  acRms: 'AC RMS of each meter window against that of the true current',
+  noise: 'standard deviation of the reading',
+  settling: 'time after a step until the reading stays within a band around its end value',
+  swallowed: 'direct current that zeroing may remove, from the constants',
+});
+
+const calibration = group('what the factory measures on each unit, with the current known', {
+  at_C: number('temperature of the calibration', { unit: '°C', min: -100, max: 200, preset: 23 }),
+  span_A: number('current of the two gain points, plus and minus', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+  samples: number('codes averaged at each point', { unit: 'samples', min: 16, max: 1e6, integer: true, preset: 4096 }),
+}, 'absent');
+
+export const PROBE = group('a probe: hardware, firmware chain, and what it must hold', {
+  name: text('name of the probe'),
+  about: text('where it is used', ''),
+  range_A: number('nominal range: accuracy in percent of range refers to it', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+  direction: number('+1 or -1: which way the current is counted positive', { unit: '', min: -1, max: 1, integer: true, preset: 1 }),
+  supply_V: number('supply of sensor and amplifier', { unit: 'V', min: 0.5, max: 100, toleranced: true, preset: 5 }),
+  core,
+  sensor,
+  amplifier,
+  converter,
+  thermometer,
+  calibration,
+  gridFactor: number('analog steps for one A/D sample; left out: 16 times the highest corner over the A/D rate', { unit: '', min: 1, max: 4096, integer: true, preset: null }),
+  chain: list('the stages in order', stage, { min: 2, max: 32 }),
+  scenarios: list('the runs', scenario, { min: 1, max: 200 }),
+  requirements: list('what must hold', requirement, { min: 1, max: 500 }),
+});
+
+export type Probe = Of<typeof PROBE>;
+export type StageSpec = Probe['chain'][number];
+export type StageSpecOf<K extends StageSpec['stage']> = Extract<StageSpec, { stage: K }>;
+export type Scenario = Probe['scenarios'][number];
+export type CurrentSpec = Scenario['current'];
+export type Requirement = Probe['requirements'][number];
