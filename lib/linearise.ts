@@ -4,7 +4,7 @@
  * i = floor((x - origin) / 2^gridBits), f = the rest,  y = knot[i] + round((knot[i+1] - knot[i]) * f / 2^gridBits)
  * Exact at the knots. Beyond the ends: the end value with CLAMPED (beyond 0), or on along the end segment (beyond 1),
  * clamped to `limit` -> CLAMPED. No memory, delay 0; gain from the knots.
- * Bound: |knot difference| * |x - origin| < 2^53.
+ * Bound: |knot difference| * |x - origin| + |knot| + 2^(gridBits-1) < 2^53.
  */
 import { add, clamp, lowBits, multiply, shiftFloor, shiftLeft, shiftRound, subtract } from './arithmetic.ts';
 import { CLAMPED } from './status.ts';
@@ -105,6 +105,7 @@ export function checkLinearise(c: LineariseConstants, _unit: UnitConstants, flow
     if (-rise > steepest) steepest = -rise;
   }
   const reach = flow.limit + (c.origin < 0 ? -c.origin : c.origin) + (sane ? shiftLeft(c.knots.length, c.gridBits) : 0);
-  problems.width('knot difference * |x - origin|', steepest * reach + 1073741824, 'use fewer guard bits');
+  // the end knot (2^31) and the rounding half (2^29 at most) come on top of the product
+  problems.width('knot difference * |x - origin|', steepest * reach + 2684354560, 'use fewer guard bits');
   flow.give(problems, c.limit, 'lower the limit');
 }
