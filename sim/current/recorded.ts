@@ -111,8 +111,9 @@ export class RecordedCurrent implements CurrentSource {
   private amperesInRow(): number {
     const amperes = scaled(this.row[this.currentColumn], this.currentPower);
     if (Math.abs(amperes) <= MOST_AMPERES) return amperes;
+    const { reader } = this;
     throw new CsvError(`${amperes} A, allowed ${-MOST_AMPERES} to ${MOST_AMPERES} A; instruments write huge numbers ` +
-      'for over-range or a missing value', this.reader.file, this.reader.line, this.reader.columnName(this.currentColumn));
+      'for over-range or a missing value', reader.file, reader.line, reader.columnName(this.currentColumn));
   }
 
   private refuseBeyondEnd(n: number): void {

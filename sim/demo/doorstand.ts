@@ -25,7 +25,6 @@ export const DOOR_STAND = {
   chain: [
     { stage: 'intake', guardBits: 8 },
     { stage: 'overRange', hold_ms: 1, stuckAfter_samples: 64 },
-    { stage: 'despike', window_samples: 3 },
     { stage: 'decimate', order: 2, ratio: 8 },
     { stage: 'thermometer', timeConstant_s: 2 },
     { stage: 'offsetTrim' },
@@ -45,7 +44,7 @@ export const DOOR_STAND = {
     {
       name: 'staircase', about: 'both directions, up to the range',
       current: { shape: 'staircase', levels_A: [0, 2, 10, 20, 30, 0, -2, -10, -20, -30], hold_ms: 200 },
-      duration_ms: 2000, judgeFrom_ms: 100, temperature_C: 25,
+      duration_ms: 2000, judgeFrom_ms: 100, settle_ms: 60, temperature_C: 25,
     },
     {
       name: 'cold drive', about: 'a steady drive current in the cold',

@@ -32,6 +32,16 @@ export function nominalUnit(probe: Probe): Unit {
   return unitOf(probe, (part) => part.nominal);
 }
 
+/** How many parts can differ from unit to unit. */
+export function countTolerances(probe: Probe): number {
+  let count = 0;
+  unitOf(probe, ({ nominal, tolerance }) => {
+    if (tolerance > 0) count++;
+    return nominal;
+  });
+  return count;
+}
+
 function unitOf(probe: Probe, choose: Choose): Unit {
   const unit: Record<string, unknown> = {};
   for (const part of PARTS) unit[part] = drawn(probe[part], part, choose);

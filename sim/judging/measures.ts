@@ -1,6 +1,6 @@
 /**
- * What is measured of a scenario: one observer a requirement. Readings that are flagged unusable, and readings before
- * judgeFrom_ms, are left out of the error (they are counted elsewhere). A measure that its scenario cannot support
+ * What is measured of a scenario: one observer a requirement. Readings that are flagged unusable, and readings at times
+ * that are not judged, are left out of the error (they are counted elsewhere). A measure that its scenario cannot support
  * says why instead of guessing.
  */
 import type { Requirement, Scenario } from '../probe/fields.ts';
@@ -28,11 +28,11 @@ type Allowance = { percentOfReading: number; percentOfRange: number; amperes: nu
 
 export function measureFor(requirement: Requirement, scenario: Scenario, rangeAmperes: number): Measure {
   switch (requirement.measure) {
-    case 'reading': return new ReadingError(requirement, scenario, rangeAmperes);
+    case 'reading': return new ReadingError(requirement, rangeAmperes);
     case 'mean':
     case 'trueRms':
-    case 'acRms': return new RecordError(requirement, scenario, rangeAmperes);
-    case 'noise': return new NoiseOfReading(requirement.limit_A, scenario);
+    case 'acRms': return new RecordError(requirement, rangeAmperes);
+    case 'noise': return new NoiseOfReading(requirement.limit_A);
     case 'settling': return new SettlingTime(requirement, scenario);
     case 'swallowed': throw new TypeError('swallowed: told from the constants, not from a scenario');
   }
@@ -77,12 +77,11 @@ class ReadingError implements Measure {
   private left = 0;
   private flagged = 0;
 
-  constructor(private readonly allowance: Allowance, private readonly scenario: Scenario, private readonly rangeAmperes: number) {}
+  constructor(private readonly allowance: Allowance, private readonly rangeAmperes: number) {}
 
   readings(block: Readings): void {
-    const from = this.scenario.judgeFrom_ms / 1e3;
     for (let i = 0; i < block.count; i++) {
-      if (block.seconds[i] < from) continue;
+      if (block.judged[i] === 0) continue;
       if (block.status[i] & UNUSABLE) {
         this.flagged++;
         continue;
@@ -113,13 +112,13 @@ class RecordError implements Measure {
 
   constructor(
     private readonly requirement: Extract<Requirement, { measure: 'mean' | 'trueRms' | 'acRms' }>,
-    private readonly scenario: Scenario, private readonly rangeAmperes: number,
+    private readonly rangeAmperes: number,
   ) {}
 
   readings(): void {}
 
   record(record: Record): void {
-    if (record.meter !== this.requirement.meter || record.seconds < this.scenario.judgeFrom_ms / 1e3) return;
+    if (record.meter !== this.requirement.meter || !record.judged) return;
     if (record.status & UNUSABLE) {
       this.flagged++;
       return;
@@ -146,11 +145,11 @@ class NoiseOfReading implements Measure {
   private squares = 0;
   private flagged = 0;
 
-  constructor(private readonly limitAmperes: number, private readonly scenario: Scenario) {}
+  constructor(private readonly limitAmperes: number) {}
 
   readings(block: Readings): void {
     for (let i = 0; i < block.count; i++) {
-      if (block.seconds[i] < this.scenario.judgeFrom_ms / 1e3) continue;
+      if (block.judged[i] === 0) continue;
       if (block.status[i] & UNUSABLE) {
         this.flagged++;
         continue;
@@ -233,7 +232,7 @@ class SettlingTime implements Measure {
 
 function nothingLeft(flagged: number, what: string): string {
   return flagged === 0
-    ? `the scenario is too short: not one ${what} after judgeFrom_ms`
+    ? `the scenario is too short: not one ${what} at a time that is judged (judgeFrom_ms, settle_ms)`
     : `every ${what} is flagged as unusable (${flagged} of ${flagged})`;
 }
 

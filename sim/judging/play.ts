@@ -8,6 +8,7 @@ import { Bench, newCodeBlock, type CodeBlock } from '../hardware/bench.ts';
 import { CLIP_AMPLIFIER, CLIP_CONVERTER, CLIP_SENSOR } from '../hardware/clip.ts';
 import type { Probe, Scenario } from '../probe/fields.ts';
 import type { Tuned } from '../tuning/tune.ts';
+import { JudgedTimes } from './judgedtimes.ts';
 import { chainMemory } from './memory.ts';
 import { Truth } from './truth.ts';
 
@@ -26,10 +27,14 @@ export interface Readings {
   /** Change of that truth, in amperes a second. */
   slope: Float64Array;
   status: Int32Array;
+  /** 1: at a time that is judged. */
+  judged: Uint8Array;
 }
 
 export interface Record {
   meter: string;
+  /** Begin and end of the window. */
+  fromSeconds: number;
   seconds: number;
   mean: number;
   trueRms: number;
@@ -37,6 +42,7 @@ export interface Record {
   count: number;
   cycles: number;
   status: number;
+  judged: boolean;
   /** The same statistics of the true current, over the same input samples. */
   truth: { mean: number; trueRms: number; acRms: number };
 }
@@ -52,7 +58,7 @@ export interface Observer {
 export interface Played {
   samples: number;
   readings: number;
-  /** Readings judged (from judgeFrom_ms on), and those of them that carry a bit of UNUSABLE. */
+  /** Readings at times that are judged, and those of them that carry a bit of UNUSABLE. */
   judged: number;
   unusable: number;
   /** Judged readings that are flagged although nothing had happened to them. */
@@ -94,6 +100,7 @@ class Player {
   private readonly out: Readings;
   private readonly ratio: number;
   private readonly memorySamples: number;
+  private readonly times: JudgedTimes;
   private readonly meterReaders: MeterReader[];
   private readonly zeroStage: number;
   private readonly played: Played;
@@ -104,7 +111,7 @@ class Player {
   private readonly causes = new Float64Array(BLOCK);
 
   constructor(
-    private readonly probe: Probe, private readonly scenario: Scenario, private readonly tuned: Tuned,
+    private readonly probe: Probe, scenario: Scenario, private readonly tuned: Tuned,
     private readonly options: PlayOptions, private readonly observers: readonly Observer[],
     private readonly pass: number, private readonly passes: number,
   ) {
@@ -115,10 +122,11 @@ class Player {
     this.meterReaders = [...tuned.meters].map(([name, stage]) => new MeterReader(name, stage, this.chain.stages[stage], tuned));
     const longestWindow = Math.max(0, ...this.meterReaders.map((reader) => reader.windowInputs));
     this.truth = new Truth(Math.ceil(tuned.delaySamples) + longestWindow + 2 * BLOCK + 2 * this.ratio);
+    this.times = new JudgedTimes(scenario);
     this.zeroStage = tuned.constants.design.findIndex((stage) => stage.kind === 'zero');
     this.out = {
       count: 0, seconds: new Float64Array(BLOCK), amperes: new Float64Array(BLOCK), truth: new Float64Array(BLOCK),
-      slope: new Float64Array(BLOCK), status: new Int32Array(BLOCK),
+      slope: new Float64Array(BLOCK), status: new Int32Array(BLOCK), judged: new Uint8Array(BLOCK),
     };
     this.played = {
       samples: this.bench.totalSamples, readings: 0, judged: 0, unusable: 0, unexplained: 0, clamped: 0,
@@ -199,7 +207,6 @@ class Player {
   private tellReadings(): void {
     const { block, out, tuned, truth, bench, played, ratio } = this;
     const secondsPerSample = 1 / (this.probe.converter.rate_kHz * 1e3);
-    const judgeFrom = this.scenario.judgeFrom_ms / 1e3;
     // the first reading of this block falls on the next multiple of the ratio since power came on
     let input = this.poweredAt + Math.ceil((this.done - this.poweredAt + 1) / ratio) * ratio - 1;
     for (let i = 0; i < block.count; i++, input += ratio) {
@@ -212,7 +219,8 @@ class Player {
       out.status[i] = status;
       played.statusSeen |= status;
       if (status & CLAMPED) played.clamped++;
-      if (out.seconds[i] < judgeFrom) continue;
+      out.judged[i] = this.times.judges(out.seconds[i], out.seconds[i]) ? 1 : 0;
+      if (out.judged[i] === 0) continue;
       played.judged++;
       if (status & UNUSABLE) played.unusable++;
       const flags = status & (OVERLOAD | CLAMPED | STUCK);
@@ -225,7 +233,7 @@ class Player {
 
   private tellRecords(): void {
     for (const reader of this.meterReaders) {
-      for (const record of reader.fresh(this.poweredAt, this.truth, (input) => this.bench.instantSeconds(input))) {
+      for (const record of reader.fresh(this.poweredAt, this.truth, this.times, (input) => this.bench.instantSeconds(input))) {
         for (const observer of this.observers) observer.record(record, this.pass);
       }
     }
@@ -256,7 +264,7 @@ class MeterReader {
     this.position = 0;
   }
 
-  *fresh(poweredAt: number, truth: Truth, secondsAt: (input: number) => number): Generator<Record> {
+  *fresh(poweredAt: number, truth: Truth, times: JudgedTimes, secondsAt: (input: number) => number): Generator<Record> {
     const written = this.meter.state[this.meter.fields.indexOf('written')];
     const { capacity } = this.meter.constants;
     for (; this.read < written; this.read++, this.slot = (this.slot + 1) % capacity) {
@@ -267,8 +275,10 @@ class MeterReader {
       const end = poweredAt + this.position * this.ratio;
       const over = truth.over(first, end);
       const scale = this.valuesPerAmpere;
+      const fromSeconds = secondsAt(first);
+      const seconds = secondsAt(end - 1);
       yield {
-        meter: this.name, seconds: secondsAt(end - 1), mean: mean / scale, trueRms: trueRms / scale, acRms: acRms / scale,
+        meter: this.name, fromSeconds, seconds, judged: times.judges(fromSeconds, seconds), mean: mean / scale, trueRms: trueRms / scale, acRms: acRms / scale,
         count, cycles, status,
         truth: {
           mean: over.mean, trueRms: Math.sqrt(over.meanSquare),

@@ -5,9 +5,11 @@
 import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import type { Preset } from '../probe/validate.ts';
 import { gridFactorOf } from '../hardware/grid.ts';
+import { countTolerances } from '../hardware/draw.ts';
 import { calibrate } from '../tuning/calibrate.ts';
 import { tune, type Tuned } from '../tuning/tune.ts';
 import { measureFor, type Measure } from './measures.ts';
+import { weighPresets, type WeighedPreset } from './presets.ts';
 import { play, type Observer, type Played } from './play.ts';
 import { settlingOf, type ChainSettling } from './settle.ts';
 import { swallowedAutomatically, swallowedOf, type Swallowed } from './swallowed.ts';
@@ -45,13 +47,15 @@ export interface Summary {
   settling: ChainSettling;
   delayMs: number;
   warnings: string[];
-  presets: Preset[];
+  presets: WeighedPreset[];
 }
 
 export interface Verdict {
   probe: string;
   seed: number;
   trial: number;
+  /** Hardware fields that have a tolerance. */
+  tolerances: number;
   rows: Row[];
   holds: boolean;
   summary: Summary;
@@ -102,7 +106,7 @@ export function* prove(probe: Probe, options: ProveOptions): Generator<Row, Verd
   rows.push(gathering.unexplainedRow(trial));
   yield rows[rows.length - 1];
   return {
-    probe: probe.name, seed, trial, rows, holds: rows.every((row) => row.holds),
+    probe: probe.name, seed, trial, tolerances: countTolerances(probe), rows, holds: rows.every((row) => row.holds),
     summary: gathering.summary(options.presets ?? []),
   };
 }
@@ -225,7 +229,7 @@ class Gathering {
       reach: tuned.constants.design.map((stage, index) => ({ stage: stage.kind, largest: this.largest[index], limit: tuned.limits[index] })),
       clampedReadings: this.clampedReadings, readings: this.readings, zeroRemoved: this.zeroRemoved,
       swallowed: swallowedOf(tuned.constants.design, tuned.countsPerAmpere), settling: settlingOf(probe, tuned),
-      delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe), presets,
+      delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe), presets: weighPresets(probe, presets),
     };
   }
 }

@@ -57,7 +57,6 @@ const thermometer = group('thermometer beside the sensor, read by the firmware',
   at25_V: number('output of a linear element at 25 °C', { unit: 'V', min: 0, max: 100, preset: 0.75 }),
   reference_V: number('full scale of its converter', { unit: 'V', min: 0.1, max: 100, preset: 3.3 }),
   bits: number('resolution of its converter', { unit: 'bits', min: 6, max: 24, integer: true, preset: 12 }),
-  every_ms: number('time between two temperature codes', { unit: 'ms', min: 0.01, max: 60000, preset: 100 }),
 }, 'absent');
 
 const start = choice('state at the first sample: as if that sample had always been there, or all zero', ['primed', 'zero'], 'primed');
@@ -236,6 +235,7 @@ const scenario = group('one run of the probe', {
   current,
   duration_ms: number('length of the run', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
   judgeFrom_ms: number('readings before this are not judged', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 0 }),
+  settle_ms: number('time after each level of a staircase, or after a step, that is not judged', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 0 }),
   temperature_C: number('temperature of the whole probe', { unit: '°C', min: -100, max: 200, preset: 25 }),
   supply_V: number('supply during the run; left out: the nominal supply', { unit: 'V', min: 0.5, max: 100, preset: null }),
   events: list('events, in any order', event, { max: 1000, optional: true }),

@@ -1,5 +1,5 @@
 /**
- * Lines of a text file of any size in flat memory: one buffer, filled by chunks. LF or CR LF; a UTF-8 byte order mark
+ * Lines of a text file of any size in flat memory, read by chunks. LF or CR LF; a UTF-8 byte order mark
  * is dropped; blank lines are passed over but counted. Lines come as one character a byte, since numbers need no more
  * and that is the fastest; `readable` gives the words of a line, as UTF-8, or as Latin-1 where the bytes are no UTF-8
  * (the micro sign of older instruments).
@@ -11,10 +11,10 @@ import { CsvError } from './error.ts';
 export const LONGEST_LINE = 65536;
 
 const CHUNK = 65536;
-const LF = 10;
-const CR = 13;
 const NO_FILE = -1;
 const BLANK = /^\s*$/;
+const UTF8_MARK = '\u00ef\u00bb\u00bf';
+const UTF16_MARK = /^(?:\u00ff\u00fe|\u00fe\u00ff)/;
 const utf8 = new TextDecoder('utf-8', { fatal: true });
 
 export class LineReader {
@@ -22,27 +22,32 @@ export class LineReader {
   line = 0;
   /** That line, one character a byte. */
   text = '';
+  private readonly path: string;
   private readonly file: string;
-  private handle: number;
-  private readonly buffer = Buffer.alloc(LONGEST_LINE + CHUNK);
-  private start = 0;
-  private end = 0;
+  private handle = NO_FILE;
+  private readonly buffer = Buffer.alloc(CHUNK);
+  private ahead = ''; // what has been read of the file, from the start of a line at `at` on
+  private at = 0;
   private readToEnd = false;
 
   /** `file`: how messages call it. */
   constructor(path: string, file: string) {
+    this.path = path;
     this.file = file;
     try {
       this.handle = openSync(path, 'r');
     } catch (error) {
-      throw unreadable(error, path, file);
+      throw this.unreadable(error);
     }
     try {
-      this.fill(path);
-      this.dropByteOrderMark();
+      this.readAhead();
+      if (this.ahead.startsWith(UTF8_MARK)) this.at = UTF8_MARK.length;
+      if (UTF16_MARK.test(this.ahead)) {
+        throw new CsvError('is UTF-16 text; allowed are UTF-8, ASCII and Latin-1', file);
+      }
     } catch (error) {
       this.close();
-      throw error instanceof CsvError ? error : unreadable(error, path, file);
+      throw error;
     }
   }
 
@@ -53,58 +58,49 @@ export class LineReader {
   }
 
   close(): void {
-    if (this.handle === NO_FILE) return;
-    closeSync(this.handle);
+    if (this.handle !== NO_FILE) closeSync(this.handle);
     this.handle = NO_FILE;
     this.readToEnd = true;
-    this.start = this.end;
+    this.ahead = '';
+    this.at = 0;
   }
 
   private nextLine(): boolean {
-    let stop = this.lineEnd();
-    while (stop < 0 && !this.readToEnd && this.end - this.start <= LONGEST_LINE + 1) { // + 1: a CR without its LF
-      this.fill(this.file);
-      stop = this.lineEnd();
+    let stop = this.ahead.indexOf('\n', this.at);
+    while (stop < 0 && !this.readToEnd && this.ahead.length - this.at <= LONGEST_LINE + 1) { // + 1: a CR without its LF
+      this.readAhead();
+      stop = this.ahead.indexOf('\n', this.at);
     }
-    if (stop < 0 && this.start === this.end) return false;
-    const after = stop < 0 ? this.end : stop + 1;
-    if (stop < 0) stop = this.end;
-    if (stop > this.start && this.buffer[stop - 1] === CR) stop--;
+    if (stop < 0 && this.at === this.ahead.length) return false;
+    const after = stop < 0 ? this.ahead.length : stop + 1;
+    if (stop < 0) stop = this.ahead.length;
+    if (stop > this.at && this.ahead[stop - 1] === '\r') stop--;
     this.line++;
-    if (stop - this.start > LONGEST_LINE) {
+    if (stop - this.at > LONGEST_LINE) {
       throw new CsvError(`longer than ${LONGEST_LINE} bytes; a line ends with LF or CR LF`, this.file, this.line);
     }
-    this.text = this.buffer.toString('latin1', this.start, stop);
-    this.start = after;
+    this.text = this.ahead.slice(this.at, stop);
+    this.at = after;
     return true;
   }
 
-  /** Place of the next line end among the bytes at hand, or -1. */
-  private lineEnd(): number {
-    const at = this.buffer.indexOf(LF, this.start);
-    return at < this.end ? at : -1; // behind `end` stand bytes of an earlier filling
-  }
-
-  private fill(path: string): void {
-    this.buffer.copyWithin(0, this.start, this.end);
-    this.end -= this.start;
-    this.start = 0;
+  private readAhead(): void {
     let got: number;
     try {
-      got = readSync(this.handle, this.buffer, this.end, this.buffer.length - this.end, null);
+      got = readSync(this.handle, this.buffer, 0, CHUNK, null);
     } catch (error) {
-      throw unreadable(error, path, this.file);
+      throw this.unreadable(error);
     }
-    this.end += got;
+    this.ahead = this.ahead.slice(this.at) + this.buffer.toString('latin1', 0, got);
+    this.at = 0;
     this.readToEnd = got === 0;
   }
 
-  private dropByteOrderMark(): void {
-    const [first, second, third] = this.buffer.subarray(0, this.end);
-    if (first === 0xef && second === 0xbb && third === 0xbf) this.start = 3;
-    if ((first === 0xff && second === 0xfe) || (first === 0xfe && second === 0xff)) {
-      throw new CsvError('is UTF-16 text; allowed are UTF-8, ASCII and Latin-1', this.file);
-    }
+  private unreadable(error: unknown): CsvError {
+    const reason = (error as NodeJS.ErrnoException).code;
+    if (reason === 'ENOENT') return new CsvError(`there is no such file (looked for ${this.path})`, this.file);
+    if (reason === 'EISDIR') return new CsvError('is a folder, not a file', this.file);
+    return new CsvError(`cannot be read: ${(error as Error).message}`, this.file);
   }
 }
 
@@ -115,11 +111,4 @@ export function readable(text: string): string {
   } catch {
     return text;
   }
-}
-
-function unreadable(error: unknown, path: string, file: string): CsvError {
-  const reason = (error as NodeJS.ErrnoException).code;
-  if (reason === 'ENOENT') return new CsvError(`there is no such file (looked for ${path})`, file);
-  if (reason === 'EISDIR') return new CsvError('is a folder, not a file', file);
-  return new CsvError(`cannot be read: ${(error as Error).message}`, file);
 }

@@ -6,7 +6,10 @@ export const CAUTIONS: readonly string[] = [
 ];
 
 /** What a verdict does not say about production. */
-export function reachOfVerdict(seed: number, trial: number): string {
-  const parts = trial === 0 ? 'with nominal parts' : `with parts drawn within their tolerances (trial ${trial})`;
+export function reachOfVerdict(verdict: { seed: number; trial: number; tolerances: number }): string {
+  const { seed, trial, tolerances } = verdict;
+  const parts = trial === 0 ? 'with nominal parts'
+    : tolerances === 0 ? 'whose parts have no tolerance in the probe file, so it is the nominal unit'
+      : `with ${tolerances} parts drawn within their tolerances (trial ${trial})`;
   return `This verdict is of one unit ${parts}, seed ${seed}; it says nothing about the spread of a production.`;
 }

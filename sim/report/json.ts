@@ -3,6 +3,5 @@ import type { Verdict } from '../judging/prove.ts';
 import { CAUTIONS, reachOfVerdict } from './caution.ts';
 
 export function verdictJson(verdict: Verdict): string {
-  const { seed, trial } = verdict;
-  return JSON.stringify({ ...verdict, reach: reachOfVerdict(seed, trial), cautions: CAUTIONS }, null, 2);
+  return JSON.stringify({ ...verdict, reach: reachOfVerdict(verdict), cautions: CAUTIONS }, null, 2);
 }

@@ -6,6 +6,9 @@ import { styleText } from 'node:util';
 import type { Row, Summary, Verdict } from '../judging/prove.ts';
 import { CAUTIONS, reachOfVerdict } from './caution.ts';
 
+/** Lines of defaults on a terminal; the JSON has all of them. */
+const PRESETS_SHOWN = 12;
+
 export interface Paint {
   good(text: string): string;
   bad(text: string): string;
@@ -59,7 +62,7 @@ export function summaryLines(verdict: Verdict, paint: Paint): string[] {
     : paint.bad(`${short} of ${verdict.rows.length} requirements fall short.`);
   return [
     '', overall, '', ...shownLines(summary), '', ...presetLines(summary, paint), '',
-    ...summary.warnings.map((warning) => `Warning: ${warning}`), reachOfVerdict(verdict.seed, verdict.trial), ...CAUTIONS,
+    ...summary.warnings.map((warning) => `Warning: ${warning}`), reachOfVerdict(verdict), ...CAUTIONS,
   ];
 }
 
@@ -89,9 +92,11 @@ function settlingText(ms: number | null): string {
 
 function presetLines(summary: Summary, paint: Paint): string[] {
   if (summary.presets.length === 0) return ['Nothing was left to defaults.'];
-  const lines = [`Left to defaults (${summary.presets.length} fields; hardware taken as ideal first):`];
-  for (const preset of summary.presets) {
-    lines.push(paint.faint(`  ${preset.path} = ${JSON.stringify(preset.value)}${preset.unit ? ` ${preset.unit}` : ''}  ${preset.meaning}`));
+  const lines = [`Left to defaults: ${summary.presets.length} fields, the weightiest first`];
+  for (const { path, value, unit, meaning, amperesForTenPercent } of summary.presets.slice(0, PRESETS_SHOWN)) {
+    const weight = amperesForTenPercent ? `; 10 % of it move full range by ${quantity(amperesForTenPercent, 'A')}` : '';
+    lines.push(paint.faint(`  ${path} = ${value}${unit ? ` ${unit}` : ''}  (${meaning}${weight})`));
   }
+  if (summary.presets.length > PRESETS_SHOWN) lines.push(paint.faint(`  and ${summary.presets.length - PRESETS_SHOWN} more: --json lists all`));
   return lines;
 }

@@ -26,7 +26,7 @@ function meanCode(
 ): number {
   const scenario: Scenario = {
     name: `calibration at ${amperes} A`, about: '', current: { shape: 'dc', level_A: amperes },
-    duration_ms: (samples + SETTLE_SAMPLES) / probe.converter.rate_kHz, judgeFrom_ms: 0, temperature_C: celsius,
+    duration_ms: (samples + SETTLE_SAMPLES) / probe.converter.rate_kHz, judgeFrom_ms: 0, settle_ms: 0, temperature_C: celsius,
     supply_V: null, events: [],
   };
   const bench = new Bench(probe, scenario, options);

@@ -20,6 +20,8 @@ export interface StageCase<C extends StageConstants> {
   limit: number;
   /** Where values often are. */
   around?: number;
+  /** Status bits that come in often. */
+  favoured?: readonly number[];
 }
 
 export interface StageLaws<C extends StageConstants> {
@@ -62,7 +64,7 @@ export function expectIntegerState(stage: Stage): void {
 export function describeStageLaws<C extends StageConstants>(laws: StageLaws<C>): void {
   const tally = new Tally(laws.branches);
   const numRuns = laws.runs ?? 150;
-  const given = laws.cases.chain((c) => fc.tuple(fc.constant(c), records(c.limit, c.around), blockLengths));
+  const given = laws.cases.chain((c) => fc.tuple(fc.constant(c), records(c.limit, c.around, c.favoured), blockLengths));
   const cut = fc.double({ min: 0, max: 1, noNaN: true });
 
   describe(`laws of every stage: ${laws.name}`, () => {

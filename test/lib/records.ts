@@ -65,11 +65,11 @@ function stretchValue(s: Stretch, n: number, limit: number, next: () => number):
   }
 }
 
-function stretchSamples(s: Stretch, limit: number): Sample[] {
+function stretchSamples(s: Stretch, limit: number, bits: readonly number[]): Sample[] {
   const next = draws(s.seed);
   const samples: Sample[] = [];
   for (let n = 0; n < s.length; n++) {
-    const extra = next() % s.rarity === 0 ? STATUS_BITS[next() % STATUS_BITS.length] : 0;
+    const extra = next() % s.rarity === 0 ? bits[next() % bits.length] : 0;
     samples.push({
       value: BigInt(stretchValue(s, n, limit, next)), status: s.status | extra, temperatureCode: s.temperatureCode,
       temperature: BigInt(next() % 9 === 0 ? s.temperature - 1 : s.temperature), zero: BigInt(next() % 100) - 50n,
@@ -78,25 +78,27 @@ function stretchSamples(s: Stretch, limit: number): Sample[] {
   return samples;
 }
 
-/** Records of 1 to about 320 samples with |value| <= limit, near `around` half of the time. */
-export function records(limit: number, around = 0): fc.Arbitrary<Sample[]> {
+/** Records of 1 to 320 samples with |value| <= limit, near `around` half of the time; `favoured` bits come often. */
+export function records(limit: number, around = 0, favoured: readonly number[] = []): fc.Arbitrary<Sample[]> {
+  const bits = [...STATUS_BITS, ...favoured, ...favoured, ...favoured];
   const near = fc.integer({ min: -3, max: 3 }).map((n) => Math.max(-limit, Math.min(limit, around + n)));
   const stretch: fc.Arbitrary<Stretch> = fc.record({
     shape: fc.constantFrom(...SHAPES),
     level: fc.oneof(near, edgy(-limit, limit)),
     length: fc.integer({ min: 1, max: 40 }),
     seed: fc.nat(),
-    status: fc.oneof({ arbitrary: fc.constant(0), weight: 5 }, { arbitrary: fc.constantFrom(...STATUS_BITS), weight: 1 }),
+    status: fc.oneof({ arbitrary: fc.constant(0), weight: 5 }, { arbitrary: fc.constantFrom(...bits), weight: 1 }),
     rarity: fc.constantFrom(2, 20, 1000000),
     temperatureCode: fc.oneof(fc.constantFrom(0, 1), edgy(-1, 5000)),
     temperature: edgy(-131071, 131072),
   });
-  return fc.array(stretch, { minLength: 1, maxLength: 8, size: 'max' }).map((list) => list.flatMap((s) => stretchSamples(s, limit)));
+  return fc.array(stretch, { minLength: 1, maxLength: 8, size: 'max' })
+    .map((list) => list.flatMap((s) => stretchSamples(s, limit, bits)));
 }
 
 /** Lengths of blocks: one sample each, odd mixtures with empty blocks, or everything at once. */
 export const blockLengths: fc.Arbitrary<number[]> = fc.oneof(
-  fc.constant([1]),
-  fc.constant([4096]),
+  fc.constant<number[]>([1]),
+  fc.constant<number[]>([4096]),
   fc.array(fc.integer({ min: 0, max: 50 }), { minLength: 1, maxLength: 6 }).map((list) => [...list, 1]),
 );

@@ -159,14 +159,14 @@ describe('dead band of plain rounding', () => {
   const decay = (a: number, first: number, feedback: number, samples: number) =>
     valuesOf(filtered([pole(a, feedback)], new Array(samples).fill(0), 0, [0, 0, first, 0, 0, 0]));
 
-  test('a = 1/2 from 7 stays at 1; a = -1/2 by hand; a = 0.95 holds 7 and 10, which is the dead band', () => {
+  test('a = 1/2 from 7 stays at 1; a = -1/2 by hand; a = 0.95 never lets 7 decay; a = 31/32 has a dead band of 16', () => {
     expect([7, ...decay(0.5, 7, 0, 5)]).toEqual([7, 4, 2, 1, 1, 1]);
     // -3.5 -> -3, 1.5 -> 2, -1, 0.5 -> 1, -0.5 -> 0
     expect([7, ...decay(-0.5, 7, 0, 5)]).toEqual([7, -3, 2, -1, 1, 0]);
     expect(decay(0.95, 7, 0, 1000)[999]).toBe(7);
-    // -9.5 is a tie and goes up, so the band is 10 below zero and one less above; 11 moves on either side
-    expect(decay(0.95, -10, 0, 1000)[999]).toBe(-9);
-    expect(Math.abs(decay(0.95, 100, 0, 1000)[999])).toBe(10);
+    // 0.5 / (1 - 31/32) = 16: 15.5 is a tie and goes up to 16, -15.5 goes up to -15
+    expect(decay(0.96875, 100, 0, 1000)[999]).toBe(16);
+    expect(decay(0.96875, -100, 0, 1000)[999]).toBe(-15);
   });
 
   test.each([1, 2])('error feedback of order %i has none: the mean goes to zero', (feedback) => {
@@ -250,11 +250,20 @@ describe('a constant comes out as that constant in the mean, from any state', ()
     }
   });
 
-  test('first-order feedback is exact at 1/1000; at 1/10000 a step of 5 has not moved after 40 corner periods', () => {
+  test('first-order feedback is exact at 1/1000', () => {
     const c = butterworth(0.001, 1, 'low');
     const settled = valuesOf(filtered([c], new Array(240000).fill(5))).slice(40000);
     expect(Math.abs(meanOf(settled) - 5)).toBeLessThanOrEqual(meanTolerance(c, settled, 5));
-    expect(valuesOf(filtered([butterworth(0.0001, 1, 'low')], new Array(400000).fill(5))).pop()).toBe(0);
+  });
+
+  test('first-order feedback at 1/10000 holds a step of 5 back until its errors have added up to half a count', () => {
+    // each sample adds 5 (b0 + b1 + b2) to the carried error, which leaves as a count at 2^29: after 25 corner periods
+    const c = butterworth(0.0001, 1, 'low');
+    const samples = Math.floor(2 ** 29 / (5 * (c.b0 + c.b1 + c.b2)));
+    expect(samples).toBeGreaterThan(250000);
+    const output = valuesOf(filtered([c], new Array(samples + 5).fill(5)));
+    expect(furthest(output.slice(0, samples), 0)).toBe(0);
+    expect(output[samples + 4]).toBe(1);
   });
 
   test('second-order feedback follows at 1/10000 too', () => {

@@ -121,7 +121,7 @@ describe('the doorway', () => {
     expect(outcomeOf(probe, standScenario(DC)).temperatureCode).toBe(0);
     probe.thermometer = {
       element: 'linear', resistance_ohm: exact(1e4), beta_K: exact(3435), series_ohm: 1e4, slope_mV_per_K: 10,
-      at25_V: 0.75, reference_V: 3.3, bits: 12, every_ms: 1,
+      at25_V: 0.75, reference_V: 3.3, bits: 12,
     };
     // (0.75 + 0.6) V/3.3 V * 4096
     expect(outcomeOf(probe, standScenario(DC, { temperature_C: 85 })).temperatureCode).toBe(1676);

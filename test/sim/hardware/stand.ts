@@ -8,7 +8,7 @@ export function exact(nominal: number): Toleranced {
 
 export function standScenario(current: CurrentSpec, change: Partial<Scenario> = {}): Scenario {
   return {
-    name: 'run', about: '', current, duration_ms: 10, judgeFrom_ms: 0, temperature_C: 25, supply_V: null, events: [],
+    name: 'run', about: '', current, duration_ms: 10, judgeFrom_ms: 0, settle_ms: 0, temperature_C: 25, supply_V: null, events: [],
     ...change,
   };
 }
