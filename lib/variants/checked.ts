@@ -35,7 +35,7 @@ function divisible(divisor: number, operator: string, operands: string): void {
 /** floor by the remainder, so that no rounded quotient is trusted */
 function floored(value: number, divisor: number): number {
   const rest = value % divisor;
-  return (value - (rest < 0 ? rest + divisor : rest)) / divisor;
+  return (value - rest) / divisor - (rest < 0 ? 1 : 0);
 }
 
 export function add(a: number, b: number): number {

@@ -18,7 +18,7 @@ export function readArguments<T extends Options>(
   } catch (error) {
     throw new UsageError(`${command}: ${(error as Error).message}`);
   }
-  const values = parsed.values as Values<T> & { help?: boolean };
+  const values = parsed.values as unknown as Values<T> & { help?: boolean };
   const count = parsed.positionals.length;
   if (!values.help && (count < positionals.min || count > positionals.max)) {
     const wanted = positionals.min === positionals.max ? `${positionals.min}` : `${positionals.min} to ${positionals.max}`;

@@ -1,11 +1,12 @@
 /**
  * What the chain of a probe makes of steady codes: raw code -> reading and status, by running the integer chain of
  * nominal parts until nothing settles any more. The one place to look when offset, gain, sign or order are in doubt.
+ * The stuck-code watch and the zero at start-up are off: steady codes trip the one and are refused by the other.
  */
 import { Block, Chain, SETTLING } from '../../lib/index.ts';
 import { nominalUnit } from '../hardware/draw.ts';
 import { thermometerCode } from '../hardware/thermometer.ts';
-import type { Probe } from '../probe/fields.ts';
+import type { Probe, StageSpec } from '../probe/fields.ts';
 import { codeSpan } from '../tuning/stages.ts';
 import { tune } from '../tuning/tune.ts';
 
@@ -20,7 +21,7 @@ const MOST_BLOCKS = 4096;
 
 /** Ten codes: both ends, round shares between, and the three around the mid code. */
 export function codeTable(probe: Probe): CodeRow[] {
-  const tuned = tune(probe);
+  const tuned = tune({ ...probe, chain: probe.chain.map(forSteadyCodes) });
   const intake = tuned.constants.design[0];
   if (intake.kind !== 'intake') return [];
   const { lowest, highest } = codeSpan(probe);
@@ -50,4 +51,10 @@ export function codeTable(probe: Probe): CodeRow[] {
     }
     return row;
   });
+}
+
+function forSteadyCodes(spec: StageSpec): StageSpec {
+  if (spec.stage === 'overRange') return { ...spec, stuckAfter_samples: 0 };
+  if (spec.stage === 'zero') return { ...spec, atStart: false, tracking: false };
+  return spec;
 }

@@ -130,7 +130,8 @@ function trimConflicts(
   stage: StageSpecOf<'offsetTrim'> | StageSpecOf<'gainTrim'>, path: string, probe: Probe, ahead: StageSpec[],
   note: Note,
 ): void {
-  needsThermometer(stage, path, probe, note);
+  // without a table of its own a trim still takes out the rest output or the gain of the unit
+  if (stage.table.length > 1) needsThermometer(stage, path, probe, note);
   const tellsTemperature = (other: StageSpec) => ['thermometer', 'custom', ''].includes(other.stage);
   if (probe.thermometer !== null && !ahead.some(tellsTemperature)) {
     note(pathTo(path, 'stage'), JSON.stringify(stage.stage), 'a trim behind a stage "thermometer"',

@@ -41,9 +41,3 @@ export function countsOf(place: Place, amperes: number): number {
 export function complain(place: Place, field: string, found: string, allowed: string, hint = ''): void {
   place.problems.push({ path: pathTo(pathTo('chain', place.index), field), found, allowed, hint });
 }
-
-/** The field of the probe file that most likely caused a refused constant; the stage itself when none is known. */
-export function placeOfConstant(index: number): string {
-  return index < 0 ? 'calibration' : pathTo('chain', index);
-}
-

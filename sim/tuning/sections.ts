@@ -15,16 +15,16 @@ const LEAST_FRACTION_BITS = 8;
 const LIMIT_OF_SUM = 2 ** 53;
 
 export function tuneSections(spec: StageSpecOf<'sections'>, place: Place): SectionsConstants | null {
-  const design = designOf(spec, place);
-  if (design === null) return null;
+  const design = designOf(spec, place.rateHz);
   const sections = design.map((biquad) => quantise(biquad, spec, place));
   const asked = spec.corner_Hz / place.rateHz;
   const rounded = sections.map(realOf);
   if (spec.filter !== 'notch') {
     const real = cornerOf(rounded, spec.filter, asked);
     if (!(Math.abs(real / asked - 1) <= MOST_CORNER_ERROR)) {
-      complain(place, 'corner_Hz', `${spec.corner_Hz} Hz, which the integers turn into ${(real * place.rateHz).toPrecision(4)} Hz`,
+      complain(place, 'corner_Hz', `${spec.corner_Hz} Hz, which the integers turn into ${Number.isNaN(real) ? 'no corner at all' : `${(real * place.rateHz).toPrecision(4)} Hz`}`,
         `a corner that integers hold within ${MOST_CORNER_ERROR * 100} %`, 'decimate first, or use fewer guard bits');
+      return null;
     }
   }
   return {
@@ -33,20 +33,10 @@ export function tuneSections(spec: StageSpecOf<'sections'>, place: Place): Secti
   };
 }
 
-function designOf(spec: StageSpecOf<'sections'>, place: Place): Biquad[] | null {
-  const nyquistHz = place.rateHz / 2;
-  if (spec.corner_Hz >= nyquistHz) {
-    complain(place, 'corner_Hz', `${spec.corner_Hz} Hz`, `below half the sample rate at this stage, ${nyquistHz} Hz`,
-      'put the filter ahead of the decimator, or lower the corner');
-    return null;
-  }
-  if (spec.filter !== 'notch') return butterworth(spec.filter, spec.order, spec.corner_Hz / place.rateHz);
-  const widthHz = spec.width_Hz ?? spec.corner_Hz / 30;
-  if (widthHz >= nyquistHz) {
-    complain(place, 'width_Hz', `${widthHz} Hz`, `below half the sample rate at this stage, ${nyquistHz} Hz`, '');
-    return null;
-  }
-  return [notch(spec.corner_Hz / place.rateHz, widthHz / place.rateHz)];
+function designOf(spec: StageSpecOf<'sections'>, rateHz: number): Biquad[] {
+  const corner = spec.corner_Hz / rateHz;
+  if (spec.filter !== 'notch') return butterworth(spec.filter, spec.order, corner);
+  return [notch(corner, (spec.width_Hz ?? 0) / rateHz)];
 }
 
 function quantise(biquad: Biquad, spec: StageSpecOf<'sections'>, place: Place): SectionConstants {

@@ -87,8 +87,8 @@ function placeOf(
 }
 
 function asProbeProblem(problem: ConstantsProblem): Problem {
-  const path = problem.stage < 0 ? pathTo('calibration', problem.field) : pathTo(pathTo('chain', problem.stage), problem.kind);
-  return { path, found: `${problem.field} = ${problem.value}`, allowed: problem.allowed, hint: problem.remedy };
+  const path = problem.stage < 0 ? 'calibration' : pathTo('chain', problem.stage);
+  return { path, found: `${problem.kind} with ${problem.field} ${problem.value}`, allowed: problem.allowed, hint: problem.remedy };
 }
 
 function makersOf(probe: Probe): CustomMaker[] {

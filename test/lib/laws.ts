@@ -9,7 +9,7 @@ import {
   Flow, loadState, powerCycle, Problems, saveState, type Domain, type Stage, type StageConstants, type UnitConstants,
 } from '../../lib/index.ts';
 import { expectSamples, feed } from './feed.ts';
-import { blockLengths, records } from './records.ts';
+import { blockLengths, evenly, records } from './records.ts';
 import { Tally } from './tally.ts';
 import type { Oracle, Sample } from './oracle/record.ts';
 
@@ -65,7 +65,7 @@ export function describeStageLaws<C extends StageConstants>(laws: StageLaws<C>):
   const tally = new Tally(laws.branches);
   const numRuns = laws.runs ?? 150;
   const given = laws.cases.chain((c) => fc.tuple(fc.constant(c), records(c.limit, c.around, c.favoured), blockLengths));
-  const cut = fc.double({ min: 0, max: 1, noNaN: true });
+  const cut = evenly(0, 1);
 
   describe(`laws of every stage: ${laws.name}`, () => {
     test('equals its oracle however the record is cut; state integers stay below 2^53', () => {

@@ -17,6 +17,11 @@ export function edgy(low: number, high: number): fc.Arbitrary<number> {
   );
 }
 
+/** Evenly between low and high, both included (fc.double is even over the bits of a double, so mostly near zero). */
+export function evenly(low: number, high: number): fc.Arbitrary<number> {
+  return fc.integer({ min: 0, max: 1048576 }).map((n) => low + (high - low) * n / 1048576);
+}
+
 export function unitOf(part: Partial<UnitConstants> = {}): UnitConstants {
   const unit: UnitConstants = {
     version: UNIT_VERSION, sign: 1, factoryZero: 0, gainQ24: UNITY_Q24, offsetTemperatures: [0], offsets: [0],

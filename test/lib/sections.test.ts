@@ -5,7 +5,7 @@ import {
 } from '../../lib/index.ts';
 import { feed } from './feed.ts';
 import { describeStageLaws, expectRefusal, problemsOf } from './laws.ts';
-import { edgy, sampleOf, unitOf } from './records.ts';
+import { edgy, evenly, sampleOf, unitOf } from './records.ts';
 import { sectionOracle, sectionsOracle } from './oracle/sections.ts';
 
 const MOST = 2147483647;
@@ -16,11 +16,11 @@ function sectionArbitrary(valueBits: number): fc.Arbitrary<SectionConstants> {
   return fc.record({
     fractionBits: edgy(1, mostBits),
     radius: fc.constantFrom(0, 0.5, 0.9, 0.999, 1),
-    angle: fc.double({ min: 0, max: Math.PI, noNaN: true }),
+    angle: evenly(0, Math.PI),
     corner: fc.constantFrom('pair', 'pair', 'pair', 'high a1', 'low a1', 'low a2'),
-    b: fc.tuple(fc.double({ min: -1, max: 1, noNaN: true }), fc.double({ min: -1, max: 1, noNaN: true }), fc.double({ min: -1, max: 1, noNaN: true })),
+    b: fc.tuple(evenly(-1, 1), evenly(-1, 1), evenly(-1, 1)),
     feedback: fc.constantFrom(0, 1, 2),
-    limit: edgy(1, Math.min(MOST, 2 ** valueBits)),
+    limit: fc.oneof(edgy(1, Math.min(MOST, 2 ** valueBits)), fc.integer({ min: 1, max: 2 })),
   }).map((d) => {
     const unity = 2 ** d.fractionBits;
     const pair = [Math.round(-2 * d.radius * Math.cos(d.angle) * unity), Math.round(d.radius * d.radius * unity)];
@@ -43,7 +43,8 @@ const cases = fc.constantFrom(1, 8, 15, 20, 24, 31).chain((valueBits) => fc.reco
   }),
   unit: fc.constant(unitOf()),
   limit: edgy(1, Math.min(MOST, 2 ** valueBits)),
-})).filter((c) => problemsOf(checkSections, c.constants, c.unit, c.limit).length === 0);
+})).chain((c) => fc.constantFrom(0, c.limit, -c.limit).map((around) => ({ ...c, around })))
+  .filter((c) => problemsOf(checkSections, c.constants, c.unit, c.limit).length === 0);
 
 describeStageLaws<SectionsConstants>({
   name: 'sections',

@@ -133,7 +133,7 @@ describe.each([
 describe('the thermometer', () => {
   test('stages that need it are refused where the hardware has none', () => {
     const problems = problemsOf(changed(tramDoor, { thermometer: undefined }));
-    expect(problems.map((problem) => problem.path)).toEqual(['chain[4].stage', 'chain[5].stage', 'chain[7].stage']);
+    expect(problems.map((problem) => problem.path)).toEqual(['chain[4].stage', 'chain[5].stage']);
   });
 
   test('a trim stands behind the stage that tells the temperature', () => {
@@ -199,6 +199,7 @@ const LEGAL: [string, Record<string, unknown>][] = [
     'scenarios[3].current.edge_us': 1e6 / 18000 / 2 }],
   ['a button still held when the run ends', { 'scenarios[0].events[0].for_ms': 1000 }],
   ['tracking that is off, whatever its fields say', { 'chain[6].tracking': false, 'chain[6].trackAuthority_A': 50 }],
+  ['tracking with all of its window', { 'chain[6].trackAuthority_A': 0.1 }],
   ['trim tables left out', { 'chain[5].table': [] }],
   ['a scenario that no requirement names', { 'requirements[0].scenario': 'ride' }],
   ['a code that fills its word', { 'converter.bits': 16 }],
