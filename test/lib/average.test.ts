@@ -19,7 +19,8 @@ describeStageLaws({
   make: (c, unit) => new Average(c, unit),
   cases: fc.record({ constants, unit: fc.constant(unitOf()), limit: edgy(1, 2147483647) }),
   oracle: averageOracle,
-  branches: ['settling of its own', 'over range stays', 'rail stays', 'clamp stays', 'stuck stays', 'length 1', 'primed'],
+  branches: ['settling of its own', 'over range stays', 'rail stays', 'clamp stays', 'stuck stays', 'length 1',
+    'primed'],
   observe(tally, c, input, output) {
     output.forEach((sample, n) => {
       const added = sample.status & ~input[n].status;
@@ -35,7 +36,8 @@ describeStageLaws({
 });
 
 const averaged = (c: Omit<AverageConstants, 'kind'>, values: number[], status: number[] = []) =>
-  feed(new Average({ kind: 'average', ...c }, unitOf()), values.map((v, n) => sampleOf(v, { status: status[n] ?? 0 })), [2]);
+  feed(new Average({ kind: 'average', ...c }, unitOf()), values.map((v, n) => sampleOf(v, { status: status[n] ?? 0 })),
+    [2]);
 
 describe('average, by hand', () => {
   test('primed: the history holds the first sample', () => {

@@ -74,7 +74,9 @@ function walk(options: BundleOptions): SourceFile[] {
 
 function edited(text: string, edit: Edit): string {
   const matches = text.split(edit.find).length - 1;
-  if (matches !== 1) throw new RangeError(`edit of ${edit.file}: "${edit.find}" matches ${matches} times, allowed: once`);
+  if (matches !== 1) {
+    throw new RangeError(`edit of ${edit.file}: "${edit.find}" matches ${matches} times, allowed: once`);
+  }
   return text.replace(edit.find, () => edit.replace);
 }
 
@@ -119,7 +121,9 @@ function exportedNames(files: SourceFile[]): Map<string, string> {
     for (const { name, isExported } of topLevelNames(tree)) {
       if (!isExported) continue;
       const other = owner.get(name);
-      if (other !== undefined) throw new RangeError(`${name} is exported by ${basename(other)} and by ${basename(path)}`);
+      if (other !== undefined) {
+        throw new RangeError(`${name} is exported by ${basename(other)} and by ${basename(path)}`);
+      }
       owner.set(name, path);
     }
   }
@@ -169,7 +173,8 @@ function stripped({ path, tree }: SourceFile, shared: Set<string>): string {
 function isReference(node: ts.Identifier, path: string): boolean {
   const parent = node.parent;
   if (ts.isPropertyAccessExpression(parent) && parent.name === node) return false;
-  if ((ts.isPropertyAssignment(parent) || ts.isClassElement(parent) || ts.isTypeElement(parent)) && parent.name === node) {
+  if ((ts.isPropertyAssignment(parent) || ts.isClassElement(parent) || ts.isTypeElement(parent)) &&
+    parent.name === node) {
     return false;
   }
   const isLocal = ts.isParameter(parent) ||

@@ -1,8 +1,12 @@
-/** Whole chains: every order that joins, against the composed oracles, and the laws that hold for a chain as for a stage. */
+/**
+ * Whole chains: every order that joins, against the composed oracles, and the laws that hold for a chain as for a
+ * stage.
+ */
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import {
-  Block, Chain, CLAMPED, EVENT_DEGAUSSED, EVENT_REVERSED, EVENT_ZERO, Meter, OVER_RANGE, RECORD_WORDS, checkConstants, makeStage,
+  Block, Chain, CLAMPED, EVENT_DEGAUSSED, EVENT_REVERSED, EVENT_ZERO, Meter, OVER_RANGE, RECORD_WORDS, checkConstants,
+  makeStage,
   problemText, type ChainConstants, type CustomMaker, type Stage, type StageConstants,
 } from '../../lib/index.ts';
 import { bundle } from './bundle.ts';
@@ -48,7 +52,8 @@ function expectMeters(chain: { stages: Stage[] }, constants: ChainConstants, beh
 
 describe('random whole chains', () => {
   const branches = [
-    ...KINDS, 'meter records', 'over range out', 'clamped out', 'three stages or more', 'sections behind scale', 'two meters',
+    ...KINDS, 'meter records', 'over range out', 'clamped out', 'three stages or more', 'sections behind scale',
+    'two meters',
   ];
   const tally = new Tally(branches);
 
@@ -67,12 +72,13 @@ describe('random whole chains', () => {
       for (const kind of new Set(kinds)) if (kind !== 'custom') tally.count(kind);
       tally.count('three stages or more', kinds.length >= 3);
       tally.count('two meters', kinds.filter((kind) => kind === 'meter').length >= 2);
-      tally.count('sections behind scale', kinds.includes('scale') && kinds.lastIndexOf('sections') > kinds.indexOf('scale'));
+      tally.count('sections behind scale', kinds.includes('scale') &&
+        kinds.lastIndexOf('sections') > kinds.indexOf('scale'));
       for (const sample of output) {
         tally.count('over range out', (sample.status & OVER_RANGE) !== 0);
         tally.count('clamped out', (sample.status & CLAMPED) !== 0);
       }
-    }), { numRuns: 600 });
+    }), { numRuns: 2500 });
     expect(tally.missing()).toEqual([]);
   });
 
@@ -160,10 +166,12 @@ const SCALE: StageConstants = { kind: 'scale', gain: 1, shift: 0, readingsPerAmp
 const METER: StageConstants = { kind: 'meter', windowSamples: 10, cycles: 0, hysteresis: 1, capacity: 1 };
 const TRIM: StageConstants = { kind: 'offsetTrim', limit: 600000 };
 const WATCH: StageConstants = {
-  kind: 'overRange', highLimit: 1, lowLimit: 0, consecutive: 1, magnitudeLimit: 1, slewLimit: 1, holdSamples: 0, stuckAfter: 0,
+  kind: 'overRange', highLimit: 1, lowLimit: 0, consecutive: 1, magnitudeLimit: 1, slewLimit: 1, holdSamples: 0,
+  stuckAfter: 0,
 };
 const ZERO: StageConstants = {
-  kind: 'zero', startMode: 0, settleSamples: 0, meanSamples: 1, spanLimit: 0, windowLimit: 0, buttonMode: 0, trackMode: 0,
+  kind: 'zero', startMode: 0, settleSamples: 0, meanSamples: 1, spanLimit: 0, windowLimit: 0, buttonMode: 0,
+  trackMode: 0,
   trackWindow: 0, holdSamples: 0, stepSamples: 1, authority: 0, suspectMode: 0, limit: 600000,
 };
 
@@ -198,7 +206,8 @@ describe('a chain that does not join is refused', () => {
 
   test('all that is wrong is listed, not only the first', () => {
     const design = [{ ...INTAKE, bits: 0 }, { ...AVERAGE, length: 0 }] as StageConstants[];
-    expect(checkConstants({ design, unit: unitOf() }).problems.map((p) => [p.stage, p.field])).toEqual([[0, 'bits'], [1, 'length']]);
+    expect(checkConstants({ design, unit: unitOf() }).problems.map((p) => [p.stage, p.field])).toEqual([[0, 'bits'],
+      [1, 'length']]);
   });
 
   test('a saved state of another chain is refused', () => {
@@ -281,6 +290,7 @@ test('every stage describes itself in one line that begins with its kind', () =>
 
 test('a meter leaves the block as it is', () => {
   fc.assert(fc.property(records(1000), (input) => {
-    expectSamples(feed(new Meter({ kind: 'meter', windowSamples: 7, cycles: 1, hysteresis: 1, capacity: 2 }, unitOf()), input, [5]), input);
+    expectSamples(feed(new Meter({ kind: 'meter', windowSamples: 7, cycles: 1, hysteresis: 1, capacity: 2 }, unitOf()),
+      input, [5]), input);
   }), { numRuns: 50 });
 });

@@ -1,4 +1,7 @@
-/** The checked and counted operators agree with the fast ones, the checked ones refuse, and the bundle is ES5 of one piece. */
+/**
+ * The checked and counted operators agree with the fast ones, the checked ones refuse, and the bundle is ES5 of one
+ * piece.
+ */
 import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { execFileSync } from 'node:child_process';
 import { tmpdir } from 'node:os';
@@ -61,7 +64,8 @@ describe('variants of the operators', () => {
   });
 
   test.each<[string, number[]]>([
-    ['add', [WALL - 1, 1]], ['add', [-WALL + 1, -1]], ['add', [0.5, 0]], ['add', [NaN, 0]], ['subtract', [-WALL + 1, 1]],
+    ['add', [WALL - 1, 1]], ['add', [-WALL + 1, -1]], ['add', [0.5, 0]], ['add', [NaN, 0]],
+    ['subtract', [-WALL + 1, 1]],
     ['multiply', [2 ** 27, 2 ** 26]], ['multiply', [0.5, 1]], ['multiplyAdd', [WALL - 1, 1, 1]],
     ['multiplyAdd', [-1, 2 ** 27, 2 ** 26]], ['shiftLeft', [1, 53]], ['shiftLeft', [2, 52]], ['shiftLeft', [1, -1]],
     ['shiftLeft', [1, 0.5]], ['shiftFloor', [1, 53]], ['shiftFloor', [WALL, 1]], ['shiftRound', [WALL - 1, 1]],
@@ -83,7 +87,8 @@ describe('variants of the operators', () => {
     counted.multiply(2147483648, 1);
     counted.multiplyAdd(1e12, 3, 4);
     counted.shiftRound(5, 1);
-    const used = counted.OPERATORS.map((name, i) => [name, counted.OPERATION_COUNTS[i]]).filter(([, times]) => times !== 0);
+    const used = counted.OPERATORS.map((name, i) => [name, counted.OPERATION_COUNTS[i]]).filter(([, times]) =>
+      times !== 0);
     expect(used).toEqual([
       ['multiply16', 1], ['multiply32', 2], ['multiplyWide', 1], ['multiplyAdd16', 1], ['shiftRound', 1],
     ]);
@@ -114,7 +119,8 @@ describe('bundle', () => {
 
   test('an edit changes that bundle and no other', () => {
     const constants = { kind: 'scale', gain: 1, shift: 1, readingsPerAmpere: 1000, limit: 100 } as const;
-    const wrong = bundle({ edits: [{ file: 'scale.ts', find: 'shiftRound(multiply(', replace: 'shiftRound(-multiply(' }] });
+    const wrong = bundle({ edits: [{ file: 'scale.ts', find: 'shiftRound(multiply(',
+      replace: 'shiftRound(-multiply(' }] });
     expect(feed(new wrong.Scale(constants, unitOf()), [sampleOf(6)], [1])[0].value).toBe(-3n);
     expect(feed(new (bundle().Scale)(constants, unitOf()), [sampleOf(6)], [1])[0].value).toBe(3n);
   });
@@ -127,14 +133,17 @@ describe('bundle', () => {
   });
 
   test('two exports of one name are refused, a source that does not parse too', () => {
-    const edit = (replace: string) => () => bundleText({ edits: [{ file: 'zero.ts', find: 'const IDLE = 0;', replace }] });
-    expect(edit('const IDLE = 0; export const CLAMPED = 4;')).toThrow('CLAMPED is exported by status.ts and by zero.ts');
+    const edit = (replace: string) => () => bundleText({ edits: [{ file: 'zero.ts', find: 'const IDLE = 0;',
+      replace }] });
+    expect(edit('const IDLE = 0; export const CLAMPED = 4;'))
+      .toThrow('CLAMPED is exported by status.ts and by zero.ts');
     expect(edit('const IDLE = ;')).toThrow(SyntaxError);
   });
 
   test('with checked operators a stage whose constants were never proved names operator and operands', () => {
     const { Scale } = bundle({ arithmetic: 'checked' });
-    const unproved = new Scale({ kind: 'scale', gain: 2147483647, shift: 0, readingsPerAmpere: 1000, limit: 1 }, unitOf());
+    const unproved = new Scale({ kind: 'scale', gain: 2147483647, shift: 0, readingsPerAmpere: 1000, limit: 1 },
+      unitOf());
     expect(() => feed(unproved, [sampleOf(2147483647)], [1])).toThrow('multiply(2147483647, 2147483647): gives');
   });
 });

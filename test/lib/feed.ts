@@ -9,7 +9,8 @@ export interface Processor {
   process(block: Block): void;
 }
 
-export function feed(target: Processor, input: Sample[], lengths: readonly number[], afterBlock?: () => void): Sample[] {
+export function feed(target: Processor, input: Sample[], lengths: readonly number[], afterBlock?: () =>
+  void): Sample[] {
   const block = new Block(Math.max(1, ...lengths));
   const output: Sample[] = [];
   let turn = 0;

@@ -18,23 +18,29 @@ const cases = fc.record({
   ),
   // where the grid begins, as a part of what comes in
   start: evenly(-1, 1),
-}).map((d) => ({
-  constants: {
-    kind: 'linearise' as const, origin: Math.round(d.start * d.limit), gridBits: d.gridBits, knots: d.knots, beyond: d.beyond,
-    limit: d.held,
-  },
-  unit: unitOf(),
-  limit: d.limit,
-  around: Math.round(d.start * d.limit),
-})).filter((c) => problemsOf(checkLinearise, c.constants, c.unit, c.limit).length === 0);
+  nearEnd: fc.constantFrom(0, 1),
+}).map((d) => {
+  const origin = Math.round(d.start * d.limit);
+  const end = Math.min(d.limit, origin + (d.knots.length - 1) * 2 ** d.gridBits);
+  return {
+    constants: {
+      kind: 'linearise' as const, origin, gridBits: d.gridBits, knots: d.knots, beyond: d.beyond, limit: d.held,
+    },
+    unit: unitOf(),
+    limit: d.limit,
+    around: d.nearEnd === 1 ? end : origin,
+  };
+}).filter((c) => problemsOf(checkLinearise, c.constants, c.unit, c.limit).length === 0);
 
 describeStageLaws<LineariseConstants>({
   name: 'linearise',
   make: (c, unit) => new Linearise(c, unit),
   cases,
   oracle: lineariseOracle,
-  branches: ['below, held', 'below, end slope', 'above, held', 'above, end slope', 'at a knot', 'at the last knot', 'between',
+  branches: ['below, held', 'below, end slope', 'above, held', 'above, end slope', 'at a knot', 'at the last knot',
+    'between',
     'clamped to limit'],
+  runs: 300,
   observe(tally, c, input, output) {
     const { origin, gridBits, knots, beyond } = c.constants;
     const step = 2n ** BigInt(gridBits);
@@ -78,7 +84,8 @@ describe('linearise, by hand', () => {
 });
 
 describe('linearise refuses', () => {
-  const good: LineariseConstants = { kind: 'linearise', origin: -8, gridBits: 3, knots: [-10, 0, 6], beyond: 0, limit: 1000 };
+  const good: LineariseConstants = { kind: 'linearise', origin: -8, gridBits: 3, knots: [-10, 0, 6], beyond: 0,
+    limit: 1000 };
   test('nothing in order', () => expect(problemsOf(checkLinearise, good, unitOf(), 1000)).toEqual([]));
   test.each<[keyof LineariseConstants, unknown]>([
     ['origin', 2147483648], ['origin', -2147483649], ['origin', 0.5], ['gridBits', -1], ['gridBits', 31], ['beyond', 2],

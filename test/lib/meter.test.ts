@@ -13,7 +13,8 @@ import { Tally } from './tally.ts';
 const cases = fc.record({
   constants: fc.record({
     kind: fc.constant<'meter'>('meter'),
-    windowSamples: fc.oneof({ arbitrary: fc.integer({ min: 1, max: 60 }), weight: 4 }, { arbitrary: edgy(1, 1048576), weight: 1 }),
+    windowSamples: fc.oneof({ arbitrary: fc.integer({ min: 1, max: 60 }), weight: 4 },
+      { arbitrary: edgy(1, 1048576), weight: 1 }),
     cycles: fc.oneof(fc.constant(0), fc.integer({ min: 1, max: 4 }), edgy(0, 65535)),
     hysteresis: fc.oneof(edgy(1, 5), edgy(1, 2147483647)),
     capacity: fc.integer({ min: 1, max: 6 }),
@@ -44,7 +45,8 @@ function recordsOf(meter: Meter): { held: number[][]; written: number } {
   return { held, written };
 }
 
-const tally = new Tally(['time-out', 'whole cycles', 'skipped', 'fixed window', 'ring full', 'status from a skipped sample']);
+const tally = new Tally(['time-out', 'whole cycles', 'skipped', 'fixed window', 'ring full',
+  'status from a skipped sample']);
 
 describe('records of a meter', () => {
   test('equal those of the oracle, newest `capacity` of them in the ring, however the record is cut', () => {
@@ -84,9 +86,12 @@ describe('records of a meter', () => {
   });
 });
 
-function metered(part: Partial<MeterConstants>, values: readonly number[], status: number[] = []): Record<string, number>[] {
-  const constants: MeterConstants = { kind: 'meter', windowSamples: 1048576, cycles: 0, hysteresis: 1, capacity: 128, ...part };
-  expect(problemsOf(checkMeter, constants, unitOf(), values.reduce((most, v) => Math.max(most, Math.abs(v)), 1))).toEqual([]);
+function metered(part: Partial<MeterConstants>, values: readonly number[], status: number[] = []): Record<string,
+number>[] {
+  const constants: MeterConstants = { kind: 'meter', windowSamples: 1048576, cycles: 0, hysteresis: 1, capacity: 128,
+    ...part };
+  expect(problemsOf(checkMeter, constants, unitOf(), values.reduce((most, v) => Math.max(most, Math.abs(v)),
+    1))).toEqual([]);
   const meter = new Meter(constants, unitOf());
   feed(meter, values.map((v, n) => sampleOf(v, { status: status[n] ?? 0, zero: BigInt(n) })), [13]);
   return recordsOf(meter).held.map((words) => Object.fromEntries(RECORD_FIELDS.map((field, i) => [field, words[i]])));
@@ -98,7 +103,8 @@ describe('meter, by hand', () => {
     expect(one).toEqual({
       skipped: 0, count: 3, mean: 2, trueRms: 1, acRms: 0, highest: 2, lowest: 1, cycles: 0, status: 0, zero: 2,
     }); // mean 5/3, rms sqrt(9/3) = 1.73, ac sqrt(27 - 25) / 3 = 0.47
-    expect(two).toMatchObject({ mean: -1, trueRms: 1, acRms: 1, highest: 0, lowest: -3, zero: 5 }); // sqrt(3), sqrt(27 - 9)/3 = 1.41
+    expect(two).toMatchObject({ mean: -1, trueRms: 1, acRms: 1, highest: 0, lowest: -3,
+      zero: 5 }); // sqrt(3), sqrt(27 - 9)/3 = 1.41
     expect(more).toEqual([]);
   });
 
@@ -107,17 +113,20 @@ describe('meter, by hand', () => {
   });
 
   test('status is the OR over the window, and a record does not carry that of the next', () => {
-    expect(metered({ windowSamples: 2 }, [0, 0, 0, 0, 0, 0], [SETTLING, 1 << 20, 0, 0, OVER_RANGE]).map((r) => r.status))
+    expect(metered({ windowSamples: 2 }, [0, 0, 0, 0, 0, 0], [SETTLING, 1 << 20, 0, 0, OVER_RANGE]).map((r) =>
+      r.status))
       .toEqual([SETTLING | (1 << 20), 0, OVER_RANGE]);
   });
 
-  test('whole cycles run from crossing to crossing, the samples ahead of the first are skipped with their status', () => {
+  test('whole cycles run from crossing to crossing, the samples ahead of the first are skipped with their status',
+    () => {
     const square = [5, 5, -5, -5];
     const input = [...square, ...square, ...square, ...square, 5];
     const output = metered({ cycles: 2 }, input, [OVER_RANGE]);
     // mean so far 5, 5, 1.67: low at -5; up at sample 4 (mean 0 there). Cycles end at 8 and 12 (both means 0 and above)
     expect(output[0]).toEqual({
-      skipped: 4, count: 8, mean: 0, trueRms: 5, acRms: 5, highest: 5, lowest: -5, cycles: 2, status: OVER_RANGE, zero: 11,
+      skipped: 4, count: 8, mean: 0, trueRms: 5, acRms: 5, highest: 5, lowest: -5, cycles: 2, status: OVER_RANGE,
+      zero: 11,
     });
     expect(output).toHaveLength(1);
   });
@@ -126,7 +135,8 @@ describe('meter, by hand', () => {
     // one window of a cycle with mean 0 becomes the reference, then swings of 3 or of 2 around it
     const start = [0, 4, -4, 4, -4, 4, -4];
     const crossings = (swing: number) =>
-      metered({ cycles: 1, hysteresis: 3 }, [...start, swing, -swing, swing, -swing, swing, -swing, 4]).map((r) => r.count);
+      metered({ cycles: 1, hysteresis: 3 }, [...start, swing, -swing, swing, -swing, swing, -swing, 4]).map((r) =>
+        r.count);
     expect(crossings(3)).toEqual([2, 2, 2, 2, 2]);
     expect(crossings(2)).toEqual([2, 8]);
   });
@@ -158,13 +168,14 @@ describe('meter, by hand', () => {
     const sine = Array.from({ length: 10000 }, (_, n) => Math.round(100000 * Math.sin(2 * Math.PI * n / 200 + 1)));
     const output = metered({ cycles: 10, hysteresis: 1000 }, sine);
     expect(output.length).toBeGreaterThanOrEqual(3);
-    // the first two crossings may fall on a moving reference; the period is a whole number of samples, so the rest is exact
+    // the first two crossings may fall on a moving reference; the period is a whole number of samples, so the rest is
+    // exact
     for (const r of output.slice(1)) expect([r.cycles, r.count]).toEqual([10, 2000]);
   });
 });
 
-// NIST Statistical Reference Datasets, univariate summary statistics NumAcc1 to NumAcc4, scaled to integers. The certified
-// standard deviations divide by n - 1; the meter's by n: sd * sqrt((n - 1) / n).
+// NIST Statistical Reference Datasets, univariate summary statistics NumAcc1 to NumAcc4, scaled to integers. The
+// certified standard deviations divide by n - 1; the meter's by n: sd * sqrt((n - 1) / n).
 describe('cancellation (NIST StRD NumAcc1 to NumAcc4)', () => {
   const pairs = (middle: number, low: number, high: number) =>
     [middle, ...Array.from({ length: 1000 }, (_, n) => (n % 2 ? high : low))];
@@ -201,13 +212,15 @@ describe('rms of standard waveforms', () => {
     ['pulse, duty 0.1', pulse(0.1), 0.1, 0.316227766017, 0.3],
     ['pulse, duty 0.25', pulse(0.25), 0.25, 0.5, 0.433012701892],
     ['pulse, duty 0.8', pulse(0.8), 0.8, 0.894427191, 0.4],
-    ['inductor current 10 + triangle of 4 peak to peak, over 12', (p) => (10 + 4 * (p - 0.5)) / 12, 10 / 12, 10.066445913694333 / 12,
+    ['inductor current 10 + triangle of 4 peak to peak, over 12', (p) => (10 + 4 * (p - 0.5)) / 12, 10 / 12,
+      10.066445913694333 / 12,
       1.1547005383792517 / 12],
-    ['DC 3 + sine of 10, over 13', (p) => (3 + 10 * sine(p)) / 13, 3 / 13, 7.681145747868608 / 13, 0.707106781187 * 10 / 13],
+    ['DC 3 + sine of 10, over 13', (p) => (3 + 10 * sine(p)) / 13, 3 / 13, 7.681145747868608 / 13,
+      0.707106781187 * 10 / 13],
   ])('%s', (_name, shape, mean, rms, acRms) => {
     const [r] = metered({ windowSamples: SAMPLES }, at(shape));
-    // midpoint rule: error of a mean below (pi / n)^2 of the peak for slopes and corners of these shapes (|f''| of x and
-    // x^2 at most (2 pi)^2 * 2 a period: h^2 / 24 * that = 8.3e-9), of a root of it the same over twice the root
+    // midpoint rule: error of a mean below (pi / n)^2 of the peak for slopes and corners of these shapes (|f''| of x
+    // and x^2 at most (2 pi)^2 * 2 a period: h^2 / 24 * that = 8.3e-9), of a root of it the same over twice the root
     // (smallest 0.09: factor 6); rounding of samples, floor and the table's 12 digits add 3 counts.
     const tolerance = (8.3e-9 * 6) * PEAK + 3;
     expect(Math.abs(r.mean - mean * PEAK)).toBeLessThanOrEqual(tolerance);

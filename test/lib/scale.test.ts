@@ -35,7 +35,8 @@ describeStageLaws({
 });
 
 const scaled = (gain: number, shift: number, limit: number, values: number[]) =>
-  feed(new Scale({ kind: 'scale', gain, shift, readingsPerAmpere: 1000, limit }, unitOf()), values.map((v) => sampleOf(v)), [2])
+  feed(new Scale({ kind: 'scale', gain, shift, readingsPerAmpere: 1000, limit }, unitOf()),
+    values.map((v) => sampleOf(v)), [2])
     .map((s) => [Number(s.value), s.status]);
 
 describe('scale, by hand', () => {

@@ -51,7 +51,8 @@ describeStageLaws<SectionsConstants>({
   make: (c, unit) => new Sections(c, unit),
   cases,
   oracle: sectionsOracle,
-  branches: ['clamped high', 'clamped low', 'settling', 'over range stays', 'feedback 0', 'feedback 1', 'feedback 2', 'clamped when primed',
+  branches: ['clamped high', 'clamped low', 'settling', 'over range stays', 'feedback 0', 'feedback 1', 'feedback 2',
+    'clamped when primed',
     'several sections'],
   observe(tally, c, input, output) {
     const { sections } = c.constants;
@@ -70,7 +71,8 @@ describeStageLaws<SectionsConstants>({
   runs: 400,
 });
 
-function filtered(sections: SectionConstants[], values: number[], primed = 0, state?: number[]): { value: number; status: number }[] {
+function filtered(sections: SectionConstants[], values: number[], primed = 0,
+  state?: number[]): { value: number; status: number }[] {
   const stage = new Sections({ kind: 'sections', sections, primed, memorySamples: 0 }, unitOf());
   if (state !== undefined) loadState(stage, [1, 0, 0, 0, 0, 0, 0, ...state]);
   return feed(stage, values.map((v) => sampleOf(v)), [500]).map((s) => ({ value: Number(s.value), status: s.status }));
@@ -100,7 +102,8 @@ describe('sections, by hand', () => {
     // order 0: round(5/16) = 0. order 1: s = 5, 10 -> 1 (e -6), -1 -> 0, 4 -> 0 (e 4), 9 -> 1, ...
     expect(valuesOf(filtered([gain], [1, 1, 1, 1, 1]))).toEqual([0, 0, 0, 0, 0]);
     expect(valuesOf(filtered([{ ...gain, feedback: 1 }], [1, 1, 1, 1, 1]))).toEqual([0, 1, 0, 0, 1]);
-    // order 2: s = 5 (0, e 5); 5 + 10 = 15 (1, e -1); 5 - 2 - 5 = -2 (0, e -2); 5 - 4 + 1 = 2 (0, e 2); 5 + 4 + 2 = 11 (1)
+    // order 2: s = 5 (0, e 5); 5 + 10 = 15 (1, e -1); 5 - 2 - 5 = -2 (0, e -2); 5 - 4 + 1 = 2 (0, e 2); 5 + 4 + 2 = 11
+    // (1)
     expect(valuesOf(filtered([{ ...gain, feedback: 2 }], [1, 1, 1, 1, 1]))).toEqual([0, 1, 0, 0, 1]);
   });
 
@@ -137,7 +140,8 @@ describe('overflow oscillation', () => {
 
   test('saturation gives the published sequence', () => {
     const published = [0.99997, 0.59997, 0.09998, -0.2, -0.24999, -0.14999, -0.025, 0.05, 0.0625, 0.0375];
-    // half a count for each rounding and 0.4 for the start, each through sum |h| = 3.125 * 16/15 < 3.34; 5 digits printed
+    // half a count for each rounding and 0.4 for the start, each through sum |h| = 3.125 * 16/15 < 3.34; 5 digits
+    // printed
     const tolerance = (0.5 + 0.4) * 3.34 / 32768 + 0.5e-5;
     const output = valuesOf(filtered([resonance(0)], new Array(10).fill(0), 0, start));
     output.forEach((y, n) => expect(Math.abs(y / 32768 - published[n]), `sample ${n}`).toBeLessThanOrEqual(tolerance));
@@ -160,7 +164,8 @@ describe('dead band of plain rounding', () => {
   const decay = (a: number, first: number, feedback: number, samples: number) =>
     valuesOf(filtered([pole(a, feedback)], new Array(samples).fill(0), 0, [0, 0, first, 0, 0, 0]));
 
-  test('a = 1/2 from 7 stays at 1; a = -1/2 by hand; a = 0.95 never lets 7 decay; a = 31/32 has a dead band of 16', () => {
+  test('a = 1/2 from 7 stays at 1; a = -1/2 by hand; a = 0.95 never lets 7 decay; a = 31/32 has a dead band of 16',
+    () => {
     expect([7, ...decay(0.5, 7, 0, 5)]).toEqual([7, 4, 2, 1, 1, 1]);
     // -3.5 -> -3, 1.5 -> 2, -1, 0.5 -> 1, -0.5 -> 0
     expect([7, ...decay(-0.5, 7, 0, 5)]).toEqual([7, -3, 2, -1, 1, 0]);
@@ -179,8 +184,8 @@ describe('dead band of plain rounding', () => {
 });
 
 /**
- * Butterworth low-pass or high-pass of order 2 by the bilinear transform, with integers whose DC gain is exactly 1 or 0.
- * K = tan(pi fc / fs), Q = sqrt(1/2).
+ * Butterworth low-pass or high-pass of order 2 by the bilinear transform, with integers whose DC gain is exactly 1 or
+ * 0. K = tan(pi fc / fs), Q = sqrt(1/2).
  */
 function butterworth(corner: number, feedback: number, kind: 'low' | 'high', limit = 8388608): SectionConstants {
   const unity = 2 ** 30;
@@ -226,7 +231,8 @@ const meanOf = (values: number[]) => values.reduce((sum, y) => sum + y, 0) / val
 describe('a constant comes out as that constant in the mean, from any state', () => {
   test.each([1, 2])('low-pass, error feedback of order %i, corner 1/100', (feedback) => {
     const c = butterworth(0.01, feedback, 'low');
-    const state = fc.tuple(edgy(-1000000, 1000000), edgy(-1000000, 1000000), edgy(-1000000, 1000000), edgy(-1000000, 1000000),
+    const state = fc.tuple(edgy(-1000000, 1000000), edgy(-1000000, 1000000), edgy(-1000000, 1000000),
+      edgy(-1000000, 1000000),
       edgy(-536870912, 536870911), edgy(-536870912, 536870911));
     fc.assert(fc.property(state, edgy(-1000000, 1000000), (words, level) => {
       // pole radius exp(-0.0444): 1000 samples take 2e6 * 100 to 1e-11
@@ -309,7 +315,8 @@ describe('sections refuse', () => {
   });
   test('none and more than eight', () => {
     expectRefusal(problemsOf(checkSections, { ...good, sections: [] }, unitOf(), 1000), 'sections');
-    expectRefusal(problemsOf(checkSections, { ...good, sections: new Array(9).fill(HALF) }, unitOf(), 1000), 'sections');
+    expectRefusal(problemsOf(checkSections, { ...good, sections: new Array(9).fill(HALF) }, unitOf(), 1000),
+      'sections');
   });
   test.each([[0, 16], [0, -16], [16, 0], [-16, 0], [31, 15], [-31, 15], [1, -15]])(
     'poles on the circle or outside: a1 %i, a2 %i of 16', (a1, a2) => {

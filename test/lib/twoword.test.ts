@@ -78,7 +78,8 @@ describe('two words', () => {
     }), { numRuns: 1000 });
   });
 
-  // Roots by definition (r^2 <= n < (r + 1)^2), the usual list of border cases of integer roots; also Python math.isqrt.
+  // Roots by definition (r^2 <= n < (r + 1)^2), the usual list of border cases of integer roots; also Python
+  // math.isqrt.
   test.each([
     [0n, 0], [1n, 1], [2n, 1], [3n, 1], [4n, 2], [8n, 2], [9n, 3], [15n, 3], [16n, 4], [17n, 4], [24n, 4], [25n, 5],
     [26n, 5], [65535n, 255], [65536n, 256], [1073741823n, 32767], [1073741824n, 32768], [2147483647n, 46340],

@@ -17,16 +17,22 @@ const cases = fc.record({
   factory: evenly(-1, 1),
   constants: fc.record({
     kind: fc.constant<'zero'>('zero'), startMode: flag, settleSamples: fewSamples,
-    meanSamples: fc.oneof({ arbitrary: fc.integer({ min: 1, max: 12 }), weight: 6 }, { arbitrary: edgy(1, 16777216), weight: 1 }),
+    meanSamples: fc.oneof({ arbitrary: fc.integer({ min: 1, max: 12 }), weight: 6 },
+      { arbitrary: edgy(1, 16777216), weight: 1 }),
     spanLimit: fc.oneof(fc.nat(10), edgy(0, 4294967295), fc.constant(4294967295)),
     windowLimit: fc.oneof(fc.nat(10), edgy(0, 2147483647), fc.constant(2147483647)),
-    buttonMode: fc.constantFrom(0, 1, 1), trackMode: flag, trackWindow: fc.oneof(fc.nat(10), edgy(0, 2147483647)), holdSamples: fewSamples,
-    stepSamples: fc.oneof(fc.integer({ min: 1, max: 5 }), edgy(1, 2147483647)), authority: fc.oneof(fc.nat(4), edgy(0, 2147483647)),
+    buttonMode: fc.constantFrom(0, 1, 1), trackMode: flag, trackWindow: fc.oneof(fc.nat(10), edgy(0, 2147483647)),
+    holdSamples: fewSamples,
+    stepSamples: fc.oneof(fc.integer({ min: 1, max: 5 }), edgy(1, 2147483647)),
+    authority: fc.oneof(fc.nat(4), edgy(0, 2147483647)),
     suspectMode: flag, limit: fc.oneof(edgy(1, 2147483647), fc.constant(2147483647)),
   }),
 }).map((d) => {
   const factoryZero = Math.round(d.factory * d.limit);
-  return { constants: d.constants, unit: unitOf({ factoryZero }), limit: d.limit, around: factoryZero, favoured: [EVENT_ZERO, EVENT_DEGAUSSED, OVER_RANGE] };
+  return {
+    constants: d.constants, unit: unitOf({ factoryZero }), limit: d.limit, around: factoryZero,
+    favoured: [EVENT_ZERO, EVENT_DEGAUSSED, OVER_RANGE],
+  };
 }).filter((c) => problemsOf(checkZero, c.constants, c.unit, c.limit).length === 0);
 
 describeStageLaws<ZeroConstants>({
@@ -34,8 +40,8 @@ describeStageLaws<ZeroConstants>({
   make: (c, unit) => new Zero(c, unit),
   cases,
   oracle: zeroOracle,
-  branches: ['settling', 'tracking', 'clamped', 'suspect', 'refused', 'taken', 'taken after a refusal', 'tracked up', 'tracked down',
-    'at the authority', 'degaussed', 'button', 'suspect cleared'],
+  branches: ['settling', 'tracking', 'clamped', 'suspect', 'refused', 'taken', 'taken after a refusal', 'tracked up',
+    'tracked down', 'at the authority', 'degaussed', 'button', 'suspect cleared'],
   observe(tally, c, input, output) {
     const factoryZero = BigInt(c.unit.factoryZero);
     output.forEach((sample, n) => {
@@ -57,7 +63,8 @@ describeStageLaws<ZeroConstants>({
       tally.count('at the authority', tracking && moved === 0n && c.constants.authority > 0 &&
         (away === BigInt(c.constants.authority) || away === -BigInt(c.constants.authority)));
       tally.count('degaussed', (input[n].status & EVENT_DEGAUSSED) !== 0 && fell(ZERO_SUSPECT));
-      tally.count('button', c.constants.buttonMode === 1 && (added & SETTLING) !== 0 && (input[n].status & EVENT_ZERO) !== 0);
+      tally.count('button', c.constants.buttonMode === 1 && (added & SETTLING) !== 0 &&
+        (input[n].status & EVENT_ZERO) !== 0);
       tally.count('suspect cleared', fell(ZERO_SUSPECT));
     });
   },
@@ -66,7 +73,8 @@ describeStageLaws<ZeroConstants>({
 
 describe('zero over a power cycle', () => {
   test('goes on from taken, its temperature and suspect; what was tracked or refused is gone', () => {
-    fc.assert(fc.property(cases.chain((c) => fc.tuple(fc.constant(c), records(c.limit, c.around, c.favoured), records(c.limit, c.around, c.favoured),
+    fc.assert(fc.property(cases.chain((c) => fc.tuple(fc.constant(c), records(c.limit, c.around, c.favoured),
+      records(c.limit, c.around, c.favoured),
       blockLengths)), ([c, first, second, lengths]) => {
       const stage = new Zero(c.constants, c.unit);
       feed(stage, first, lengths);
@@ -80,7 +88,8 @@ describe('zero over a power cycle', () => {
 });
 
 const PLAIN: ZeroConstants = {
-  kind: 'zero', startMode: 0, settleSamples: 0, meanSamples: 2, spanLimit: 4, windowLimit: 10, buttonMode: 0, trackMode: 0,
+  kind: 'zero', startMode: 0, settleSamples: 0, meanSamples: 2, spanLimit: 4, windowLimit: 10, buttonMode: 0,
+  trackMode: 0,
   trackWindow: 5, holdSamples: 2, stepSamples: 1, authority: 3, suspectMode: 0, limit: 1000,
 };
 
@@ -103,13 +112,15 @@ describe('zero, by hand', () => {
   });
 
   test('a disturbed sample starts the wait anew, then the mean anew', () => {
-    const busy = zeroed({ startMode: 1, settleSamples: 2 }, new Array(9).fill(4), [0, RAILED, 0, 0, 0, OVER_RANGE, 0, 0, 0]);
+    const busy = zeroed({ startMode: 1, settleSamples: 2 }, new Array(9).fill(4),
+      [0, RAILED, 0, 0, 0, OVER_RANGE, 0, 0, 0]);
     expect(busy.map((s) => s[1])).toEqual([0, 0, 0, 0, 0, 0, 0, 4, 4]);
     expect(busy.map((s) => s[2] & SETTLING)).toEqual([...new Array(8).fill(SETTLING), 0]);
   });
 
   test('a rising edge takes a zero, a level does not take another', () => {
-    const output = zeroed({ buttonMode: 1 }, [6, 6, 6, 2, 2, 2, 2], [0, EVENT_ZERO, EVENT_ZERO, EVENT_ZERO, 0, EVENT_ZERO, 0]);
+    const output = zeroed({ buttonMode: 1 }, [6, 6, 6, 2, 2, 2, 2], [0, EVENT_ZERO, EVENT_ZERO, EVENT_ZERO, 0,
+      EVENT_ZERO, 0]);
     expect(output.map((s) => s[1])).toEqual([0, 0, 6, 6, 6, 6, 2]);
   });
 
@@ -117,7 +128,8 @@ describe('zero, by hand', () => {
     const button = { buttonMode: 1 };
     expect(zeroed(button, [0, 4], [EVENT_ZERO])[1]).toEqual([2, 2, SETTLING]);
     expect(zeroed(button, [0, 5, 5, 1, 1, 1], [EVENT_ZERO, 0, 0, EVENT_ZERO]).map((s) => [s[1], s[2]])).toEqual([
-      [0, SETTLING], [0, SETTLING | ZERO_REFUSED], [0, ZERO_REFUSED], [0, SETTLING | ZERO_REFUSED], [1, SETTLING], [1, 0],
+      [0, SETTLING], [0, SETTLING | ZERO_REFUSED], [0, ZERO_REFUSED], [0, SETTLING | ZERO_REFUSED], [1, SETTLING],
+      [1, 0],
     ]);
   });
 
@@ -154,15 +166,18 @@ describe('zero, by hand', () => {
   });
 
   test('tracking is frozen while disturbed, while suspect and while a zero is taken', () => {
-    const frozen = zeroed({ trackMode: 1, suspectMode: 1, holdSamples: 0 }, new Array(4).fill(3), [0, SETTLING, OVER_RANGE, 0]);
+    const frozen = zeroed({ trackMode: 1, suspectMode: 1, holdSamples: 0 }, new Array(4).fill(3),
+      [0, SETTLING, OVER_RANGE, 0]);
     expect(frozen.map((s) => s[2] & TRACKING)).toEqual([TRACKING, 0, 0, 0]);
-    const busy = zeroed({ trackMode: 1, buttonMode: 1, holdSamples: 0, meanSamples: 2 }, new Array(4).fill(3), [0, EVENT_ZERO]);
+    const busy = zeroed({ trackMode: 1, buttonMode: 1, holdSamples: 0, meanSamples: 2 }, new Array(4).fill(3),
+      [0, EVENT_ZERO]);
     expect(busy.map((s) => s[2] & TRACKING)).toEqual([TRACKING, 0, 0, TRACKING]);
     expect(busy.map((s) => s[1])).toEqual([1, 1, 3, 3]);
   });
 
   test('a direct current that is on from the start is eaten up to window and authority, never more', () => {
-    const output = zeroed({ startMode: 1, buttonMode: 1, trackMode: 1, trackWindow: 2147483647 }, new Array(200).fill(11));
+    const output = zeroed({ startMode: 1, buttonMode: 1, trackMode: 1, trackWindow: 2147483647 },
+      new Array(200).fill(11));
     expect(output[199]).toEqual([8, 3, TRACKING | ZERO_REFUSED]);
   });
 
@@ -176,8 +191,10 @@ describe('zero refuses', () => {
   test('nothing in order', () => expect(problemsOf(checkZero, PLAIN, unitOf(), 1000)).toEqual([]));
   test.each<[keyof ZeroConstants, number]>([
     ['startMode', 2], ['buttonMode', -1], ['trackMode', 0.5], ['suspectMode', 2], ['settleSamples', -1],
-    ['settleSamples', 2147483648], ['meanSamples', 0], ['meanSamples', 16777217], ['spanLimit', -1], ['spanLimit', 4294967296],
-    ['windowLimit', -1], ['windowLimit', 2147483648], ['trackWindow', -1], ['trackWindow', 2147483648], ['holdSamples', -1],
+    ['settleSamples', 2147483648], ['meanSamples', 0], ['meanSamples', 16777217], ['spanLimit', -1],
+    ['spanLimit', 4294967296],
+    ['windowLimit', -1], ['windowLimit', 2147483648], ['trackWindow', -1], ['trackWindow', 2147483648],
+    ['holdSamples', -1],
     ['holdSamples', 2147483648], ['stepSamples', 0], ['stepSamples', 2147483648], ['authority', -1], ['limit', 0],
   ])('%s %s', (field, value) => {
     expectRefusal(problemsOf(checkZero, { ...PLAIN, [field]: value }, unitOf(), 1000), field);

@@ -1,7 +1,7 @@
 /**
  * The oracle of a whole chain: the composition of the oracles of its stages, found in the files beside this one by the
- * name of the kind (despike: `despikeOracle`). Gives the record behind every stage, so that the records of a meter anywhere
- * in the chain can be told from what it stood in.
+ * name of the kind (despike: `despikeOracle`). Gives the record behind every stage, so that the records of a meter
+ * anywhere in the chain can be told from what it stood in.
  */
 import { readdirSync } from 'node:fs';
 import type { ChainConstants, StageConstants } from '../../../lib/index.ts';
@@ -10,7 +10,8 @@ import type { Oracle, Sample } from './record.ts';
 type Kind = StageConstants['kind'];
 
 export const KINDS: readonly Kind[] = [
-  'intake', 'overRange', 'despike', 'demodulate', 'decimate', 'thermometer', 'offsetTrim', 'zero', 'gainTrim', 'linearise',
+  'intake', 'overRange', 'despike', 'demodulate', 'decimate', 'thermometer', 'offsetTrim', 'zero', 'gainTrim',
+  'linearise',
   'sections', 'average', 'scale', 'meter',
 ];
 

@@ -47,6 +47,14 @@ describe('phase', () => {
     }), { numRuns: 5000 });
   });
 
+  test('stays below 1 where the exact phase is nearer to a whole period than float64 can say', () => {
+    for (let frequencyHz = 1; frequencyHz <= 1000; frequencyHz++) {
+      const phase = new GridPhase(frequencyHz, 1 / frequencyHz).at(1);
+      expect(phase >= 0 && phase < 1).toBe(true);
+      expect(phaseError(phase, 1, frequencyHz, 1 / frequencyHz)).toBeLessThan(2 ** -51);
+    }
+  });
+
   test('a plain product would not do: its phase is off by more than 1e-4 of a period at 2^53 - 1 steps', () => {
     const plain = ((2 ** 53 - 1) * (1 / 3e5) * 50) % 1;
     expect(phaseError(plain, 2 ** 53 - 1, 50, 1 / 3e5)).toBeGreaterThan(1e-4);

@@ -39,6 +39,15 @@ describe('between rows', () => {
     expect(take(open('0,1\n1,3\n2,-1\n4,7\n', 0.5), 9)).toEqual([1, 2, 3, 1, -1, 1, 3, 5, 7]);
   });
 
+  test('every number recorded on the grid comes out as it is, zero without its sign', () => {
+    const numbers = fc.array(fc.double({ min: -1e6, max: 1e6, noNaN: true }), { minLength: 2, maxLength: 30 });
+    fc.assert(fc.property(numbers, (amperes) => {
+      const rows = amperes.map((value, i) => `${i},${value}`);
+      const found = take(open(rows.join('\n'), 1), amperes.length);
+      expect(found.map((value) => value + 0)).toEqual(amperes.map((value) => value + 0));
+    }));
+  });
+
   test('many rows between two points: only those around a point matter', () => {
     const rows = Array.from({ length: 1001 }, (_, i) => `${i / 1000},${i % 250 === 0 ? i / 250 : 999}`);
     expect(take(open(rows.join('\n'), 0.25), 5)).toEqual([0, 1, 2, 3, 4]);

@@ -41,6 +41,7 @@ describe('the same rows in every dialect', () => {
     'comma, quoted decimal comma': '"t","I"\n"0","-1,5"\n"0,001","2500"\n"0,0025","0,125"\n',
     'CR LF, no heading, no end of the last line': '0,-1.5\r\n0.001,2500\r\n0.0025,0.125',
     'byte order mark, blanks, blank lines': '\ufefft , I\n\n 0 , -1.5 \n\n0.001, 2500\n   \n0.0025, 0.125\n\n',
+    'byte order mark before the first number': '\ufeff0,-1.5\n0.001,2500\n0.0025,0.125\n',
     'notes above, units below the headings': 'Recorder;3\nnote\nat noon; in the shade\n\nTime;I\n(s);(A)\n' +
       '0;-1.5\n0.001;2500\n0.0025;0.125\n',
     'a separator behind each row': 'Time,I\n0,-1.5,\n0.001,2500,\n0.0025,0.125,\n',
@@ -138,6 +139,7 @@ describe('faults and their places', () => {
     ['two signs', 't,I\n0,1\n1,--2\n', 3, '"I"', '"--2" is not a number'],
     ['two points', 't,I\n0,1\n1,1.2.3\n', 3, '"I"', '"1.2.3" is not a number'],
     ['an open quote', 't,I\n0,1\n1,"2\n', 3, '"I"', '""2" is not a number'],
+    ['text behind a quote', 't,I\n0,1\n1,"2"x\n', 3, '"I"', '""2"x" is not a number'],
     ['letters beyond ASCII', 't,I\n0,1\n1,\u2212\u00b5\n', 3, '"I"', '"\u2212\u00b5" is not a number'],
     ['an empty cell', 't,I\n0,1\n,2\n', 3, '"t"', 'an empty cell where a number must stand'],
     ['a number beyond double precision', 't,I\n0,1\n1,1e999\n', 3, '"I"', '"1e999" is too large a number'],
@@ -176,6 +178,17 @@ describe('faults and their places', () => {
       const padded = (bytes: number): string => `t,I\n0,1\n${'1,'.padEnd(bytes - 1)}2${end}`;
       expect(read(padded(LONGEST_LINE))).toEqual([[0, 1], [1, 2]]);
       expect(faultOf(() => read(padded(LONGEST_LINE + 1)))).toMatchObject({ line: 3 });
+    }
+  });
+
+  test('a longest line keeps its end and its number wherever the chunks are cut', () => {
+    for (let blanks = LONGEST_LINE - 20; blanks < LONGEST_LINE; blanks++) {
+      const reader = open(`0,1\n${' '.repeat(blanks)}\n${'1,'.padEnd(LONGEST_LINE - 1)}2\r\n3,4\n`);
+      const row = new Float64Array(2);
+      const lines: number[] = [];
+      while (reader.next(row)) lines.push(reader.line);
+      expect(lines).toEqual([1, 3, 4]);
+      expect([...row]).toEqual([3, 4]);
     }
   });
 

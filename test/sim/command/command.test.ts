@@ -1,0 +1,162 @@
+import { existsSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
+import { join } from 'node:path';
+import { afterAll, beforeAll, describe, expect, test } from 'vitest';
+import { CAUTIONS } from '../../../sim/report/caution.ts';
+import { quietProbe, QUIET_CODE_AMPERES } from '../probes.ts';
+import { emptyFolder, hallproof } from './program.ts';
+
+let folder = '';
+let remove = (): void => {};
+
+beforeAll(() => {
+  ({ folder, remove } = emptyFolder());
+  writeFileSync(join(folder, 'quiet.json'), JSON.stringify(quietProbe({})));
+  writeFileSync(join(folder, 'short.json'), JSON.stringify(quietProbe({
+    amplifier: { gain: 2, virtualGround_V: 2.4, bandwidth_kHz: 2000 }, chain: [{ stage: 'intake', midCode: 32000 }, { stage: 'scale' }],
+    requirements: [{ measure: 'reading', scenario: 'steady', amperes: 0.1 }],
+  })));
+  writeFileSync(join(folder, 'wrong.json'), JSON.stringify(quietProbe({ range_A: -3, color: 'red' })));
+});
+afterAll(() => remove());
+
+describe('prove', () => {
+  test('exit 0 when all hold, with the cautions', () => {
+    const { status, out } = hallproof(folder, 'prove', 'quiet.json');
+    expect(status).toBe(0);
+    expect(out).toMatch(/^holds .* reading: steady/m);
+    for (const line of CAUTIONS) expect(out).toContain(line);
+  });
+
+  test('exit 1 when something falls short, with one line that starts with "because" under it', () => {
+    const { status, out } = hallproof(folder, 'prove', 'short.json');
+    expect(status).toBe(1);
+    expect(out).toMatch(/^SHORT .*\n {8}because the reading is off by a steady/m);
+  });
+
+  test('exit 2 on a wrong file: every wrong field, on standard error, nothing on standard output', () => {
+    const { status, out, err } = hallproof(folder, 'prove', 'wrong.json');
+    expect(status).toBe(2);
+    expect(out).toBe('');
+    expect(err).toContain('range_A');
+    expect(err).toContain('color');
+  });
+
+  test.each([
+    [['prove', 'absent.json'], /absent\.json/],
+    [['prove', '--only', 'nothing', 'quiet.json'], /no such scenario; there are "steady"/],
+    [['prove', '--seed', 'x', 'quiet.json'], /--seed/],
+    [['prove', '--trial', '-1', 'quiet.json'], /trial/],
+    [['prove', '--frobnicate'], /frobnicate/],
+    [['prove', 'a.json', 'b.json'], /expected 0 to 1 file names, got 2/],
+    [['improve'], /no command "improve"; there are prove, read, new, fields/],
+    [['new', 'starter.txt'], /must end in \.mjs/],
+    [['fields', 'nonsense'], /no table/],
+  ])('exit 2 with a message that helps: %j', (given, message) => {
+    const { status, err } = hallproof(folder, ...given);
+    expect(status).toBe(2);
+    expect(err).toMatch(message);
+    expect(err).not.toContain('    at ');
+  });
+
+  test('--json is the whole verdict, with stable ids and the cautions', () => {
+    const { status, out } = hallproof(folder, 'prove', 'quiet.json', '--json');
+    expect(status).toBe(0);
+    const verdict = JSON.parse(out);
+    expect(verdict.rows.map((row: { id: string }) => row.id)).toEqual(['reading@steady', 'unexplainedFlags']);
+    expect(verdict).toMatchObject({ holds: true, seed: 1, trial: 1, cautions: CAUTIONS });
+  });
+
+  test('--quiet prints only what falls short', () => {
+    expect(hallproof(folder, 'prove', 'quiet.json', '--quiet').out).toBe('');
+    expect(hallproof(folder, 'prove', 'short.json', '--quiet').out.trim().split('\n').length).toBe(2);
+  });
+
+  test('--csv writes every reading beside the truth, and never replaces a file', () => {
+    expect(hallproof(folder, 'prove', 'quiet.json', '--csv', 'readings.csv').status).toBe(0);
+    const lines = readFileSync(join(folder, 'readings.csv'), 'utf8').trim().split('\n');
+    expect(lines[0]).toBe('scenario,time_s,true_A,reading_A,status');
+    expect(lines.length).toBe(1 + 400);
+    expect(Number(lines[200].split(',')[2])).toBe(10);
+    const again = hallproof(folder, 'prove', 'quiet.json', '--csv', 'readings.csv');
+    expect(again).toMatchObject({ status: 2 });
+    expect(again.err).toContain('nothing was written');
+    expect(readdirSync(folder).filter((name) => name.endsWith('.partial'))).toEqual([]);
+  });
+
+  test('--help of each command and of all', () => {
+    for (const command of ['prove', 'read', 'new', 'fields']) {
+      const { status, out } = hallproof(folder, command, '--help');
+      expect(status).toBe(0);
+      expect(out).toContain(`hallproof ${command}`);
+    }
+    expect(hallproof(folder, '--help').out).toContain('hallproof read PROBE CODES.csv');
+    expect(hallproof(folder).status).toBe(2);
+  });
+});
+
+describe('new', () => {
+  test('writes a starter that holds, and never replaces a file', () => {
+    expect(hallproof(folder, 'new', 'mine.mjs').status).toBe(0);
+    const text = readFileSync(join(folder, 'mine.mjs'), 'utf8');
+    expect(text.split('\n').length).toBeLessThan(35);
+    expect(hallproof(folder, 'prove', 'mine.mjs').status).toBe(0);
+    expect(hallproof(folder, 'new', 'mine.mjs').status).toBe(2);
+    expect(readFileSync(join(folder, 'mine.mjs'), 'utf8')).toBe(text);
+  });
+});
+
+describe('read', () => {
+  // mid code of the quiet probe: 2.5 V of 5 V in 16 bits
+  const MID = 32768;
+
+  function codes(name: string, lines: string[]): string {
+    writeFileSync(join(folder, name), `${lines.join('\n')}\n`);
+    return name;
+  }
+
+  test('puts codes through the chain: code to current by the formula of the README', () => {
+    codes('codes.csv', ['code', ...[0, 100, -1].map((offset) => `${MID + offset}`)]);
+    const { status, out } = hallproof(folder, 'read', 'quiet.json', 'codes.csv');
+    expect(status).toBe(0);
+    const readings = out.trim().split('\n').slice(1).map((line) => Number(line.split(',')[2]));
+    // 1 uA is the last place of a reading
+    [0, 100, -1].forEach((offset, i) => expect(Math.abs(readings[i] - offset * QUIET_CODE_AMPERES)).toBeLessThan(1e-6));
+  });
+
+  test('says the status in words and judges against a reference', () => {
+    codes('referenced.csv', ['code;reference_A', `${MID};0,0`, `${MID + 1000};${String((1000 * QUIET_CODE_AMPERES).toFixed(6)).replace('.', ',')}`]);
+    const good = hallproof(folder, 'read', 'quiet.json', 'referenced.csv', '--to', 'good.csv');
+    expect(good.status).toBe(0);
+    expect(good.err).toMatch(/^holds: worst error/m);
+    codes('off.csv', ['code,reference_A', `${MID},3`]);
+    const off = hallproof(folder, 'read', 'quiet.json', 'off.csv', '--json', '--to', 'off-readings.csv');
+    expect(off.status).toBe(1);
+    expect(JSON.parse(off.out)).toMatchObject({ holds: false, samples: 1, worst: { error: -3, limit: 1, share: 3 } });
+  });
+
+  test.each([
+    ['fraction.csv', ['code', '1', '1.5'], /line 3.*column "code".*found 1\.5/],
+    ['large.csv', ['code', '65536'], /line 2.*found 65536, allowed a whole number from -32768 to 65535/],
+    ['text.csv', ['code', '1', 'n\/a'], /line 3.*"n\/a" is not a number/],
+    ['nocode.csv', ['volts,amperes', '1,2'], /no column "code"; there are "volts", "amperes"/],
+  ])('exit 2 with the line that is wrong, and nothing written: %s', (name, lines, message) => {
+    codes(name, lines);
+    const { status, err } = hallproof(folder, 'read', 'quiet.json', name, '--to', `${name}.out`);
+    expect(status).toBe(2);
+    expect(err).toMatch(message);
+    expect(existsSync(join(folder, `${name}.out`))).toBe(false);
+  });
+
+  test('events and temperature travel with the codes; how the record is long does not matter', () => {
+    const probe = quietProbe({ chain: [{ stage: 'intake', guardBits: 4 }, { stage: 'zero', mean_ms: 1, span_A: 1, window_A: 5 }, { stage: 'scale' }] });
+    writeFileSync(join(folder, 'zero.json'), JSON.stringify(probe));
+    const rows = Array.from({ length: 700 }, (_, i) => `${MID + 1000},${i >= 300 && i < 310 ? 1 : 0}`);
+    codes('button.csv', ['code,zero', ...rows]);
+    const { status, out } = hallproof(folder, 'read', 'zero.json', 'button.csv');
+    expect(status).toBe(0);
+    const cells = out.trim().split('\n').slice(1).map((line) => line.split(','));
+    expect(Math.abs(Number(cells[299][2]) - 1000 * QUIET_CODE_AMPERES)).toBeLessThan(1e-6);
+    expect(cells[305][3]).toContain('settling');
+    expect(Number(cells[699][2])).toBe(0);
+  });
+});
