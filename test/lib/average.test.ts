@@ -1,3 +1,7 @@
+/**
+ * Average against the mean of the whole history, and by hand: first sample, ties, how long a bit stays, the
+ * largest length over the largest value, and what its check refuses.
+ */
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import {

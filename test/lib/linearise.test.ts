@@ -1,3 +1,7 @@
+/**
+ * Linearise against a search among the knots, and by hand: knots, ties, both ways beyond the ends, clamps, and
+ * what its check refuses.
+ */
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { CLAMPED, Linearise, checkLinearise, type LineariseConstants } from '../../lib/index.ts';

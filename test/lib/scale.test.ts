@@ -1,3 +1,7 @@
+/**
+ * Scale against one exact rational number rounded once, and by hand: ties, clamps at both ends, and what its
+ * check refuses, the law of width one step beside its end.
+ */
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { CLAMPED, Scale, checkScale, type ScaleConstants } from '../../lib/index.ts';

@@ -18,7 +18,7 @@ export class Tally {
   }
 
   /** The branches that were reached too rarely, with their count. */
-  missing(): string[] { if (process.env.TALLY) console.log([...this.times].map((x) => x.join(' ')).join(', '));
+  missing(): string[] {
     return [...this.times].filter(([, times]) => times < this.least).map(([branch, times]) => `${branch}: ${times}`);
   }
 }

@@ -28,15 +28,15 @@ export function windowRecord(samples: Sample[], skipFrom: number, from: number, 
   return [
     from - skipFrom, values.length, Number(roundDivide(sum, n)), Number(integerRoot(squares / n)),
     Number(integerRoot(n * squares - sum * sum) / n), Number(sorted[sorted.length - 1]), Number(sorted[0]), cycles,
-    status,
-    Number(window[window.length - 1].zero),
+    status, Number(window[window.length - 1].zero),
   ];
 }
 
 function fixedWindows(length: number, samples: Sample[]): number[][] {
   const records: number[][] = [];
-  for (let end = length; end <= samples.length; end += length) records.push(windowRecord(samples, end - length,
-    end - length, end, 0));
+  for (let end = length; end <= samples.length; end += length) {
+    records.push(windowRecord(samples, end - length, end - length, end, 0));
+  }
   return records;
 }
 
