@@ -4,11 +4,12 @@
  * Fixed windows (cycles = 0): windowSamples samples each, one directly behind the other.
  * Whole cycles (cycles > 0): a window runs from one upward crossing to the cycles-th after it. A crossing is upward
  * when x reaches mean + hysteresis after it was at mean - hysteresis or below; mean is that of the window before, or
- * while there is none, of the samples so far. Samples ahead of the first crossing are skipped (counted in the record).
- * windowSamples samples without an end close the window as one without cycles (cycles 0 in the record).
+ * while there is none, of the samples since this skip or window began, x not included. Samples ahead of the first
+ * crossing are skipped (counted in the record). windowSamples samples without an end close the window as one without
+ * cycles (cycles 0 in the record), also when the next sample would have been its crossing.
  * Over a window of N samples, S = sum x, Q = sum x^2, both exact:
  *   mean = round(S / N)   trueRms = floor(sqrt(Q / N))   acRms = floor(sqrt(N Q - S^2) / N)
- * With q = floor(S / N), r = S - q N:  N Q - S^2 = N D - r^2 where D = Q - N q^2 - 2 q r, which fits two words.
+ * With q = floor(|S| / N), r = |S| - q N:  N Q - S^2 = N D - r^2 where D = Q - N q^2 - 2 q r, which fits two words.
  * After reset: no window open, no record. No delay. A record's status is the OR over its samples and those skipped.
  * The last `capacity` records are held in `ring`, the next goes to number `slot`; `written` counts all, modulo 2^32.
  * Bounds: N <= 2^20, so N |x| <= 2^51; Q < 2^82 in two words.

@@ -9,8 +9,8 @@
  * value from memory), so with order 1 or 2 a constant comes out as itself in the mean, without a dead band.
  * A result beyond +-limit is clamped -> CLAMPED; the clamped value is what is fed back, and e is emptied.
  * DC gain (b0+b1+b2) / (2^F+a1+a2): exactly 1 or 0 when the integers say so. First sample: primed, x and y as if that
- * sample had always been there (y = round(x * DC gain)); from zero, all 0 and SETTLING for memorySamples samples.
- * Lingering bits stay for memorySamples samples. Bound: (sum |b|) * |x| + (|a1|+|a2|) * limit + 2^(F+1) < 2^53
+ * sample had always been there (y = round(x * DC gain), the section behind primed with that y); from zero, all 0 and
+ * SETTLING for memorySamples samples. Lingering bits, and the CLAMPED of a section, stay for memorySamples samples. Bound: (sum |b|) * |x| + (|a1|+|a2|) * limit + 2^(F+1) < 2^53
  * (k1 e1 + k2 e2 is at most 3 * 2^(F-1), the rounding half 2^(F-1)).
  */
 import { add, clamp, divideRound, multiply, multiplyAdd, shiftLeft, shiftRound, subtract } from './arithmetic.ts';
@@ -79,12 +79,12 @@ export class Sections implements Stage {
     const state = this.state;
     const sections = this.constants.sections;
     if (count === 0) return;
-    linger(block, state, 2, this.constants.memorySamples);
     if (state[0] === 0) {
       state[0] = 1;
       if (this.constants.primed === 1) this.prime(block.value[0]);
     }
     for (let n = 0; n < sections.length; n++) this.section(block, sections[n], SECTION_AT + 6 * n);
+    linger(block, state, 2, this.constants.memorySamples);
     let settleLeft = state[1];
     for (let i = 0; i < count && settleLeft > 0; i++) {
       status[i] |= SETTLING;

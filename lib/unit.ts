@@ -60,7 +60,10 @@ export function unitFromWords(words: readonly number[]): UnitConstants {
     gainsQ24: copyOf(words, gainStart + 1 + UNIT_KNOTS, gainCount),
     crc: words[UNIT_WORDS - 1],
   };
-  if (unitCrc(unit) !== unit.crc) throw new RangeError('unit record: CRC ' + unit.crc + ' does not match its words');
+  if (crcOfWords(words, UNIT_WORDS - 1) !== unit.crc) {
+    throw new RangeError('unit record: CRC ' + unit.crc + ' does not match its words');
+  }
+  if (unitCrc(unit) !== unit.crc) throw new RangeError('unit record: expected 0 in the words of unused knots');
   return unit;
 }
 

@@ -4,12 +4,15 @@
  * taken    the stored zero: the unit's factory zero at first, then the mean of `meanSamples` samples, rounded, taken at
  *          start-up (after `settleSamples` undisturbed samples) or at a rising edge of EVENT_ZERO. Refused, with
  *          ZERO_REFUSED until one succeeds, when their span is over spanLimit, their mean is further than windowLimit
- *          from the factory zero, or (start-up only) while the zero is suspect. SETTLING until it is decided. A
- *          disturbed sample (over range, rail, clamped, stuck, settling) starts the wait or the mean anew.
+ *          from the factory zero, or (start-up only) while the zero is suspect. SETTLING until it is decided; the sample
+ *          that decides still carries it and already has the new zero removed. A disturbed sample (over range, rail,
+ *          clamped, stuck, settling) starts the wait or the mean anew. The button is low before the first sample, so
+ *          one held at reset is an edge; an edge ends an attempt under way, start-up included.
  * tracked  while tracking: one count towards x every stepSamples samples, |tracked| <= authority. Only after
  *          holdSamples samples in a row with |x - factoryZero| <= trackWindow, none disturbed, no zero being taken,
  *          not suspect; TRACKING then. The window looks at x, not at y, so a wrong zero cannot hold its own gate shut.
- * suspect  (suspectMode) from the first over-range or rail until a zero is taken or EVENT_DEGAUSSED; ZERO_SUSPECT.
+ * suspect  (suspectMode) from the first over-range or rail until a zero is taken or EVENT_DEGAUSSED; ZERO_SUSPECT. An
+ *          overload on the same sample as EVENT_DEGAUSSED leaves it suspect.
  * Kept over a power cycle: taken, its temperature, suspect. After reset: the factory zero. The zero lane carries
  * taken + tracked. Delay 0, gain 1, no memory that lingers. Bound: meanSamples * |x| < 2^53.
  */

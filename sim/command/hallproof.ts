@@ -3,13 +3,14 @@
 import { ProbeError } from '../probe/problem.ts';
 import { CsvError } from '../recorded/csv.ts';
 import { BAD_INPUT, HOLDS, UsageError } from './fault.ts';
+import { constantsCommand, CONSTANTS_HELP } from './constants.ts';
 import { fieldsCommand, FIELDS_HELP } from './fields.ts';
 import { newCommand, NEW_HELP } from './new.ts';
 import { proveCommand, PROVE_HELP } from './prove.ts';
 import { readCommand, READ_HELP } from './read.ts';
 
 const COMMANDS: { [name: string]: (given: string[]) => Promise<number> } = {
-  prove: proveCommand, read: readCommand, new: newCommand, fields: fieldsCommand,
+  prove: proveCommand, read: readCommand, new: newCommand, constants: constantsCommand, fields: fieldsCommand,
 };
 
 const HELP = `hallproof proves the integer measuring firmware of a digitizing Hall-effect current probe.
@@ -19,6 +20,8 @@ ${PROVE_HELP}
 ${READ_HELP}
 
 ${NEW_HELP}
+
+${CONSTANTS_HELP}
 
 ${FIELDS_HELP}`;
 

@@ -3,6 +3,7 @@
  * limits, a gain and a direction that are not zero.
  */
 import { mustBeBelow, mustLieWithin, type Note, type Quantity } from './conflict.ts';
+import type { Toleranced } from './describe.ts';
 import type { Probe } from './fields.ts';
 
 export function hardwareConflicts(probe: Probe, note: Note): void {
@@ -18,18 +19,18 @@ export function hardwareConflicts(probe: Probe, note: Note): void {
 }
 
 function sensorConflicts(sensor: Probe['sensor'], note: Note): void {
-  const low = volts('sensor.swingLow_V', sensor.swingLow_V);
-  const high = volts('sensor.swingHigh_V', sensor.swingHigh_V);
+  const low = highestOf('sensor.swingLow_V', sensor.swingLow_V);
+  const high = lowestOf('sensor.swingHigh_V', sensor.swingHigh_V);
   mustBeBelow(note, low, high);
   if (low.value < high.value) mustLieWithin(note, volts('sensor.rest_V', sensor.rest_V.nominal), low, high);
 }
 
 function amplifierConflicts(amplifier: Probe['amplifier'], note: Note): void {
-  const low = volts('amplifier.railLow_V', amplifier.railLow_V);
-  const high = volts('amplifier.railHigh_V', amplifier.railHigh_V);
+  const low = highestOf('amplifier.railLow_V', amplifier.railLow_V);
+  const high = lowestOf('amplifier.railHigh_V', amplifier.railHigh_V);
   mustBeBelow(note, low, high);
   if (low.value < high.value) {
-    mustLieWithin(note, volts('amplifier.virtualGround_V', amplifier.virtualGround_V), low, high);
+    mustLieWithin(note, volts('amplifier.virtualGround_V', amplifier.virtualGround_V.nominal), low, high);
   }
   const { nominal, tolerance } = amplifier.gain;
   if (nominal === 0) note('amplifier.gain', '0', 'a gain that is not 0', 'without gain no current is seen');
@@ -40,9 +41,18 @@ function amplifierConflicts(amplifier: Probe['amplifier'], note: Note): void {
 
 function thermometerConflicts(probe: Probe, note: Note): void {
   const thermometer = probe.thermometer;
-  if (thermometer !== null && thermometer.element === 'linear' && thermometer.slope_mV_per_K === 0) {
+  if (thermometer !== null && thermometer.element === 'linear' && thermometer.slope_mV_per_K.nominal === 0) {
     note('thermometer.slope_mV_per_K', '0 mV/K', 'a slope that is not 0 for a linear element (thermometer.element)');
   }
+}
+
+/** The highest that a lower limit gets within its tolerance, and the lowest of an upper one. */
+function highestOf(path: string, { nominal, tolerance }: Toleranced): Quantity {
+  return volts(path, nominal + tolerance);
+}
+
+function lowestOf(path: string, { nominal, tolerance }: Toleranced): Quantity {
+  return volts(path, nominal - tolerance);
 }
 
 function volts(path: string, value: number): Quantity {

@@ -19,10 +19,10 @@ const sensor = group('linear Hall sensor in the gap', {
   rest_V: number('output without field at 25 °C and nominal supply', { unit: 'V', min: 0, max: 100, toleranced: true }),
   restDrift_mV_per_K: number('change of the rest output with temperature', { unit: 'mV/K', min: -100, max: 100, toleranced: true, preset: 0 }),
   ratiometric: flag('rest output and sensitivity scale with the supply', false),
-  swingLow_V: number('lowest output the sensor reaches', { unit: 'V', min: 0, max: 100, preset: 0.2 }),
-  swingHigh_V: number('highest output the sensor reaches', { unit: 'V', min: 0, aboveMin: true, max: 100, preset: 4.8 }),
+  swingLow_V: number('lowest output the sensor reaches', { unit: 'V', min: 0, max: 100, toleranced: true, preset: 0.2 }),
+  swingHigh_V: number('highest output the sensor reaches', { unit: 'V', min: 0, aboveMin: true, max: 100, toleranced: true, preset: 4.8 }),
   bandwidth_kHz: number('-3 dB corner of the sensor (one pole)', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
-  noise_uT_per_rtHz: number('white noise density referred to the field', { unit: 'µT/√Hz', min: 0, max: 1000, preset: 0 }),
+  noise_uT_per_rtHz: number('white noise density referred to the field', { unit: 'µT/√Hz', min: 0, max: 1000, toleranced: true, preset: 0 }),
   bias: choice('how the bias of the Hall plate is switched, for a chain that demodulates', ['steady', 'reversal', 'quarter turn'], 'steady'),
   biasPhase_samples: number('A/D samples in one phase of a switched bias', { unit: 'samples', min: 2, max: 65536, integer: true, preset: 32 }),
   plateOffset_mT: number('offset of the plate itself, referred to the field; part of rest_V when the bias is steady', { unit: 'mT', min: -100, max: 100, toleranced: true, preset: 0 }),
@@ -30,10 +30,10 @@ const sensor = group('linear Hall sensor in the gap', {
 
 const amplifier = group('amplifier between sensor and A/D converter, around a virtual ground', {
   gain: number('voltage gain', { unit: '', min: -1e4, max: 1e4, toleranced: true }),
-  virtualGround_V: number('the voltage that the amplifier keeps in place', { unit: 'V', min: 0, max: 100 }),
+  virtualGround_V: number('the voltage that the amplifier keeps in place', { unit: 'V', min: 0, max: 100, toleranced: true }),
   offset_mV: number('input offset voltage', { unit: 'mV', min: -1000, max: 1000, toleranced: true, preset: 0 }),
-  railLow_V: number('lowest output', { unit: 'V', min: -100, max: 100, preset: 0 }),
-  railHigh_V: number('highest output', { unit: 'V', min: -100, max: 100, preset: 5 }),
+  railLow_V: number('lowest output', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 0 }),
+  railHigh_V: number('highest output', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 5 }),
   bandwidth_kHz: number('-3 dB corner (one pole), also the anti-alias filter', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
 });
 
@@ -45,17 +45,17 @@ const converter = group('A/D converter', {
   format: choice('how a code is written', ['offset binary', "two's complement"], 'offset binary'),
   justified: choice('where the code stands in its word', ['right', 'left'], 'right'),
   word_bits: number('width of the word that holds a code', { unit: 'bits', min: 8, max: 32, integer: true, preset: 16 }),
-  noise_codes: number('noise of the converter, standard deviation', { unit: 'codes', min: 0, max: 1000, preset: 0 }),
+  noise_codes: number('noise of the converter, standard deviation', { unit: 'codes', min: 0, max: 1000, toleranced: true, preset: 0 }),
 });
 
 const thermometer = group('thermometer beside the sensor, read by the firmware', {
   element: choice('what senses the temperature', ['thermistor', 'platinum', 'linear'], 'thermistor'),
   resistance_ohm: number('resistance at 25 °C of a thermistor, at 0 °C of a platinum element', { unit: 'Ω', min: 1, max: 1e7, toleranced: true, preset: 10000 }),
   beta_K: number('beta of a thermistor', { unit: 'K', min: 1000, max: 10000, toleranced: true, preset: 3435 }),
-  series_ohm: number('resistor from the reference to the element', { unit: 'Ω', min: 1, max: 1e7, preset: 10000 }),
-  slope_mV_per_K: number('slope of a linear element', { unit: 'mV/K', min: -1000, max: 1000, preset: 10 }),
-  at25_V: number('output of a linear element at 25 °C', { unit: 'V', min: 0, max: 100, preset: 0.75 }),
-  reference_V: number('full scale of its converter', { unit: 'V', min: 0.1, max: 100, preset: 3.3 }),
+  series_ohm: number('resistor from the reference to the element', { unit: 'Ω', min: 1, max: 1e7, toleranced: true, preset: 10000 }),
+  slope_mV_per_K: number('slope of a linear element', { unit: 'mV/K', min: -1000, max: 1000, toleranced: true, preset: 10 }),
+  at25_V: number('output of a linear element at 25 °C', { unit: 'V', min: 0, max: 100, toleranced: true, preset: 0.75 }),
+  reference_V: number('full scale of its converter', { unit: 'V', min: 0.1, max: 100, toleranced: true, preset: 3.3 }),
   bits: number('resolution of its converter', { unit: 'bits', min: 6, max: 24, integer: true, preset: 12 }),
 }, 'absent');
 

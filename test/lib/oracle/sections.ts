@@ -50,7 +50,7 @@ export function sectionOracle(c: SectionConstants, values: bigint[], primed: boo
 export const sectionsOracle: Oracle<SectionsConstants> = (constants, _unit, input) => {
   if (input.length === 0) return [];
   let values = input.map((sample) => sample.value);
-  let output = lingerOracle(input, constants.memorySamples);
+  let output = input;
   let before = constants.primed === 1 ? values[0] : 0n;
   for (const section of constants.sections) {
     const { y, clampedAt, rest } = sectionOracle(section, values, constants.primed === 1, before);
@@ -58,6 +58,7 @@ export const sectionsOracle: Oracle<SectionsConstants> = (constants, _unit, inpu
     output = output.map((sample, n) => ({ ...sample, status: sample.status | (clampedAt[n] ? CLAMPED : 0) }));
     values = y;
   }
+  output = lingerOracle(output, constants.memorySamples);
   const settling = constants.primed === 1 ? 0 : constants.memorySamples;
   return output.map((sample, n) => ({
     ...sample, value: values[n], status: sample.status | (n < settling ? SETTLING : 0),

@@ -2,8 +2,23 @@ import { existsSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { CAUTIONS } from '../../../sim/report/caution.ts';
-import { quietProbe, QUIET_CODE_AMPERES } from '../probes.ts';
+import { checkConstants } from '../../../lib/index.ts';
+import { tune } from '../../../sim/tuning/tune.ts';
+import { probeOf, quietProbe, QUIET_CODE_AMPERES } from '../probes.ts';
 import { emptyFolder, hallproof } from './program.ts';
+
+const OWN_STAGE = `
+class Halve {
+  kind = 'custom'; fields = []; kept = []; state = new Float64Array(0); ring = new Int32Array(0);
+  constructor(words) { this.shift = words[0]; }
+  reset() {}
+  process(block) { for (let i = 0; i < block.count; i++) block.value[i] = Math.floor(block.value[i] / 2 ** this.shift); }
+  describe() { return 'halve'; }
+}
+export default ${JSON.stringify(quietProbe({
+    chain: [{ stage: 'intake', guardBits: 4 }, { stage: 'custom', name: 'halve', version: 2, words: [1], make: 0 }, { stage: 'scale' }],
+  })).replace('"make":0', '"make":(words) => new Halve(words)')};
+`;
 
 let folder = '';
 let remove = (): void => {};
@@ -48,7 +63,7 @@ describe('prove', () => {
     [['prove', '--trial', '-1', 'quiet.json'], /trial/],
     [['prove', '--frobnicate'], /frobnicate/],
     [['prove', 'a.json', 'b.json'], /expected 0 to 1 file names, got 2/],
-    [['improve'], /no command "improve"; there are prove, read, new, fields/],
+    [['improve'], /no command "improve"; there are prove, read, new, constants, fields/],
     [['new', 'starter.txt'], /must end in \.mjs/],
     [['fields', 'nonsense'], /no table/],
   ])('exit 2 with a message that helps: %j', (given, message) => {
@@ -84,13 +99,35 @@ describe('prove', () => {
   });
 
   test('--help of each command and of all', () => {
-    for (const command of ['prove', 'read', 'new', 'fields']) {
+    for (const command of ['prove', 'read', 'new', 'constants', 'fields']) {
       const { status, out } = hallproof(folder, command, '--help');
       expect(status).toBe(0);
       expect(out).toContain(`hallproof ${command}`);
     }
     expect(hallproof(folder, '--help').out).toContain('hallproof read PROBE CODES.csv');
     expect(hallproof(folder).status).toBe(2);
+  });
+});
+
+describe('constants', () => {
+  test('prints one line a stage, and as JSON the very table that a chain is made from', () => {
+    const { out, status } = hallproof(folder, 'constants', 'quiet.json');
+    expect(status).toBe(0);
+    expect(out).toContain('intake: 16 bits offset binary, mid code 32768, 4 guard bits');
+    const table = JSON.parse(hallproof(folder, 'constants', 'quiet.json', '--json').out);
+    expect(checkConstants(table).problems).toEqual([]);
+    expect(table).toEqual(tune(probeOf(quietProbe({}))).constants);
+  });
+
+  test('a stage of one\'s own, given as code in the probe file, works and is recorded with its name and version', () => {
+    writeFileSync(join(folder, 'own.mjs'), OWN_STAGE);
+    const { out, err, status } = hallproof(folder, 'constants', 'own.mjs', '--json');
+    expect(err).toBe('');
+    expect(status).toBe(0);
+    expect(JSON.parse(out).design[1]).toMatchObject({ kind: 'custom', name: 'halve', version: 2, words: [1] });
+    // 10 A, halved
+    const verdict = JSON.parse(hallproof(folder, 'prove', 'own.mjs', '--json').out);
+    expect(verdict.rows[0].value).toBeCloseTo(-5, 3);
   });
 });
 

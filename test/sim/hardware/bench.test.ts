@@ -60,8 +60,8 @@ function append(all: Outcome, block: CodeBlock): void {
 
 function noisyProbe(): Probe {
   const probe = standProbe();
-  probe.sensor.noise_uT_per_rtHz = 0.5;
-  probe.converter.noise_codes = 0.7;
+  probe.sensor.noise_uT_per_rtHz = exact(0.5);
+  probe.converter.noise_codes = exact(0.7);
   probe.core.gap_mm = { nominal: 2, tolerance: 0.1 };
   return probe;
 }
@@ -120,8 +120,8 @@ describe('the doorway', () => {
     const probe = standProbe();
     expect(outcomeOf(probe, standScenario(DC)).temperatureCode).toBe(0);
     probe.thermometer = {
-      element: 'linear', resistance_ohm: exact(1e4), beta_K: exact(3435), series_ohm: 1e4, slope_mV_per_K: 10,
-      at25_V: 0.75, reference_V: 3.3, bits: 12,
+      element: 'linear', resistance_ohm: exact(1e4), beta_K: exact(3435), series_ohm: exact(1e4), slope_mV_per_K: exact(10),
+      at25_V: exact(0.75), reference_V: exact(3.3), bits: 12,
     };
     // (0.75 + 0.6) V/3.3 V * 4096
     expect(outcomeOf(probe, standScenario(DC, { temperature_C: 85 })).temperatureCode).toBe(1676);
@@ -168,7 +168,7 @@ describe('clipping', () => {
     // swing +-2.3 V, times 1.5: the amplifier rails too, and its rail of 5 V is one code beyond the converter
     expect(bits(() => {}).at(-1)).toBe(CLIP_SENSOR | CLIP_AMPLIFIER | CLIP_CONVERTER);
     expect(bits((probe) => { probe.amplifier.gain = exact(1); }).at(-1)).toBe(CLIP_SENSOR);
-    expect(bits((probe) => { probe.sensor.swingHigh_V = 100; probe.converter.reference_V = exact(6); }).at(-1))
+    expect(bits((probe) => { probe.sensor.swingHigh_V = exact(100); probe.converter.reference_V = exact(6); }).at(-1))
       .toBe(CLIP_AMPLIFIER);
     expect(bits((probe) => { probe.amplifier.gain = exact(1); probe.converter.reference_V = exact(4); }).at(-1))
       .toBe(CLIP_SENSOR | CLIP_CONVERTER);
@@ -285,8 +285,8 @@ describe('counted randomness', () => {
       const { code } = outcomeOf(probe, standScenario(DC, { duration_ms: 400 }), { capacity: 4096 });
       return code.map((one) => one - 2048);
     };
-    const sensor = noiseOf((probe) => { probe.sensor.noise_uT_per_rtHz = 3; });
-    const converter = noiseOf((probe) => { probe.converter.noise_codes = 3; });
+    const sensor = noiseOf((probe) => { probe.sensor.noise_uT_per_rtHz = exact(3); });
+    const converter = noiseOf((probe) => { probe.converter.noise_codes = exact(3); });
     const product = (a: number[], b: number[]) => a.reduce((sum, x, k) => sum + x * b[k], 0);
     const correlation = product(sensor, converter) / Math.sqrt(product(sensor, sensor) * product(converter, converter));
     expect(Math.abs(correlation)).toBeLessThan(5 / Math.sqrt(sensor.length));
@@ -294,8 +294,8 @@ describe('counted randomness', () => {
 
   test('noise in the codes is that of sensor and converter together', () => {
     const probe = standProbe();
-    probe.sensor.noise_uT_per_rtHz = 3;
-    probe.converter.noise_codes = 2;
+    probe.sensor.noise_uT_per_rtHz = exact(3);
+    probe.converter.noise_codes = exact(2);
     const { code } = outcomeOf(probe, standScenario(DC, { duration_ms: 2000 }), { capacity: 4096 });
     const mean = code.reduce((sum, x) => sum + x, 0) / code.length;
     const variance = code.reduce((sum, x) => sum + (x - mean) ** 2, 0) / code.length;

@@ -19,16 +19,16 @@ export function standProbe(): Probe {
     core: { gap_mm: exact(2), path_mm: exact(80), permeability: exact(2200), turns: 1 },
     sensor: {
       sensitivity_mV_per_mT: exact(50), sensitivityDrift_ppm_per_K: exact(0), rest_V: exact(2.5),
-      restDrift_mV_per_K: exact(0), ratiometric: false, swingLow_V: 0.2, swingHigh_V: 4.8, bandwidth_kHz: exact(50),
-      noise_uT_per_rtHz: 0, bias: 'steady', biasPhase_samples: 32, plateOffset_mT: exact(0),
+      restDrift_mV_per_K: exact(0), ratiometric: false, swingLow_V: exact(0.2), swingHigh_V: exact(4.8), bandwidth_kHz: exact(50),
+      noise_uT_per_rtHz: exact(0), bias: 'steady', biasPhase_samples: 32, plateOffset_mT: exact(0),
     },
     amplifier: {
-      gain: exact(1.5), virtualGround_V: 2.5, offset_mV: exact(0), railLow_V: 0, railHigh_V: 5,
+      gain: exact(1.5), virtualGround_V: exact(2.5), offset_mV: exact(0), railLow_V: exact(0), railHigh_V: exact(5),
       bandwidth_kHz: exact(20),
     },
     converter: {
       bits: 12, rate_kHz: 50, reference: 'fixed', reference_V: exact(5), format: 'offset binary', justified: 'right',
-      word_bits: 16, noise_codes: 0,
+      word_bits: 16, noise_codes: exact(0),
     },
     thermometer: null, calibration: null, gridFactor: null, chain: [],
     scenarios: [], requirements: [],

@@ -107,7 +107,7 @@ test('every problem is in one error, one line each', () => {
     'probe: 3 problems',
     '  core.gap_mm: found nothing, allowed above 0, up to 100 mm, or {nominal, tolerance}; ' +
       'length of the air gap that holds the sensor',
-    '  sensor.noise_uT_per_rtHz: found -3, allowed 0 to 1000 µT/√Hz',
+    '  sensor.noise_uT_per_rtHz: found -3, allowed 0 to 1000 µT/√Hz, or {nominal, tolerance}',
     '  chain[9].corner_Hz: found "400", allowed above 0, up to 10000000 Hz; write it without quotes',
   ];
   expect(() => validate(given)).toThrow(new ProbeError(problemsOf(given)));
