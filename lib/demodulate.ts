@@ -110,7 +110,7 @@ export class Demodulate implements Stage {
     state[MEAN + phase] = divideRound(sum, taken);
     state[BITS + phase] = bits;
     state[SEEN + phase] = 1;
-    if (this.outputBits() & SETTLING) return;
+    if (!this.allSeen()) return;
     if (this.constants.quarter === 1) {
       const kept = add(state[MEAN], state[MEAN + 2]);
       state[5] = shiftRound(subtract(kept, add(state[MEAN + 1], state[MEAN + 3])), 2);
@@ -119,14 +119,17 @@ export class Demodulate implements Stage {
     }
   }
 
+  allSeen(): boolean {
+    const state = this.state;
+    const both = state[SEEN] === 1 && state[SEEN + 1] === 1;
+    return both && (this.constants.quarter === 0 || (state[SEEN + 2] === 1 && state[SEEN + 3] === 1));
+  }
+
   /** What still lingers in the means that make up the output; SETTLING while one is missing. */
   outputBits(): number {
     const state = this.state;
-    if (this.constants.quarter === 1) {
-      const all = state[SEEN] + state[SEEN + 1] + state[SEEN + 2] + state[SEEN + 3];
-      return state[BITS] | state[BITS + 1] | state[BITS + 2] | state[BITS + 3] | (all < 4 ? SETTLING : 0);
-    }
-    return state[BITS] | state[BITS + 1] | (state[SEEN] + state[SEEN + 1] < 2 ? SETTLING : 0);
+    const bits = state[BITS] | state[BITS + 1] | (this.allSeen() ? 0 : SETTLING);
+    return this.constants.quarter === 1 ? bits | state[BITS + 2] | state[BITS + 3] : bits;
   }
 
   describe(): string {
