@@ -70,11 +70,9 @@ export function divideFloor(value: number, divisor: number): number {
   return Math.floor(value / divisor);
 }
 
-/** floor(value / divisor + 1/2), divisor > 0 */
+/** floor(value / divisor + 1/2), divisor > 0; |value| + divisor below 2^53, so that the multiple beyond it is exact too */
 export function divideRound(value: number, divisor: number): number {
   const quotient = Math.floor(value / divisor);
-  // measured from the multiple on zero's side of the value, because the one beyond it may pass 2^53
-  if (value < 0) return 2 * (value - (quotient + 1) * divisor) >= -divisor ? quotient + 1 : quotient;
   return 2 * (value - quotient * divisor) >= divisor ? quotient + 1 : quotient;
 }
 

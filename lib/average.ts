@@ -3,7 +3,7 @@
  *
  * sum[n] = sum[n-1] + x[n] - x[n-length],   y[n] = round(sum[n] / length); the sum is an exact integer, for ever.
  * First sample: primed, the history holds that sample; from zero, it holds 0 and SETTLING is set until `length` samples
- * are in. Lingering bits stay for length - 1 samples. DC gain 1, delay (length - 1) / 2 samples.
+ * are in and does not linger. Lingering bits stay for length - 1 samples. DC gain 1, delay (length - 1) / 2 samples.
  * Memory: `length` words. Bound: length * |x| < 2^47.
  */
 import { add, divideRound, multiply, subtract } from './arithmetic.ts';

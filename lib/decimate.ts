@@ -5,7 +5,7 @@
  * that wrap modulo 2^32; then y = round(comb / ratio^order), so any constant comes out as that constant.
  * An output falls on every ratio-th input after reset; block borders do not matter. First sample x0: primed, the
  * stage works on x - x0 and adds x0 back, which equals x0 having been there always; from zero, SETTLING until
- * order * (ratio - 1) + 1 inputs are in. DC gain 1, delay order * (ratio - 1) / 2 input samples.
+ * order * (ratio - 1) + 1 inputs are in and does not linger. DC gain 1, delay order * (ratio - 1) / 2 input samples.
  * Status: event levels and states are ORed over the inputs of one output; a lingering bit stays while its sample is
  * within the order * (ratio - 1) + 1 inputs that make up an output. Temperature and zero: those of the last input.
  * Bound: register width = input bits + growth, growth = ceil(order * log2 ratio), at most 32 (E. B. Hogenauer, "An

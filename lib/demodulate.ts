@@ -1,15 +1,16 @@
 /**
  * Demodulate: undoes a Hall bias that is switched by event levels. Takes and gives counts, one out for one in.
  *
- * A phase is a stretch of samples with the same EVENT_REVERSED and EVENT_QUARTER. Its first `blank` samples are left
- * out; the rest give its mean m = round(sum / n) when the phase ends, or after `longest` samples.
+ * A phase is a stretch of samples with the same EVENT_REVERSED and EVENT_QUARTER (reversal looks at EVENT_REVERSED
+ * alone). Its first `blank` samples are left out; the rest give its mean m = round(sum / n), which counts from the sample
+ * behind the phase on, or behind its `longest`-th sample.
  *   reversal:     y = round((m0 - mR) / 2)                  removes what lies behind the plate (sensor amplifier, A/D)
  *   quarter turn: y = round((m0 + mQ - mR - mRQ) / 4)       removes the plate's own offset too
  * with the latest mean of each phase, held between. Neither removes remanence or an outer field, which are fields like
  * the measured one; and current near the switching frequency reads as DC.
  * First sample: SETTLING and y = 0 until each phase has been seen. A phase longer than `longest` (the bias does not
- * switch) sets STUCK. A phase wholly blanked keeps the old mean. Lingering bits of a phase's samples stay with every
- * y made from it. Delay: half a period of all phases; DC gain 1. Bound: longest * |x| < 2^53.
+ * switch) sets STUCK. A phase wholly blanked keeps the old mean. Lingering bits of the samples in a mean stay with every
+ * y made from it, also while settling; those of other samples do not come out. Delay: half a period of all phases; DC gain 1. Bound: longest * (|x| + 1) < 2^53.
  */
 import { add, divideRound, shiftRound, subtract } from './arithmetic.ts';
 import { EVENT_QUARTER, EVENT_REVERSED, LINGERING, SETTLING, STUCK } from './status.ts';
@@ -144,6 +145,6 @@ export function checkDemodulate(c: DemodulateConstants, _unit: UnitConstants, fl
   problems.integer('quarter', c.quarter, 0, 1, 'reversal 0, quarter turn 1');
   problems.integer('longest', c.longest, 1, 2097152, 'switch the bias faster');
   problems.integer('blank', c.blank, 0, c.longest - 1, 'blank less than the longest phase');
-  problems.width('longest * |x|', c.longest * flow.limit, 'shorten the longest phase or use fewer guard bits');
+  problems.width('longest * |x|', c.longest * (flow.limit + 1), 'shorten the longest phase or use fewer guard bits');
   if (c.quarter === 0) flow.give(problems, flow.limit, 'use fewer guard bits');
 }

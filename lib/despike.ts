@@ -3,7 +3,7 @@
  *
  * y[n] = median(x[n], x[n-1], ..., x[n-window+1]); exact, no rounding, DC gain 1, delay (window - 1) / 2 samples.
  * First sample: primed, the history holds that sample; from zero, the history holds 0 and SETTLING is set until
- * window samples are in. A lingering status bit stays on the window - 1 samples behind. Bound: none beyond the input.
+ * window samples are in and does not linger. A lingering status bit stays on the window - 1 samples behind. Bound: none beyond the input.
  * Network of five: seven compare-exchanges (D. E. Knuth, The Art of Computer Programming 3, section 5.3.3, median
  * selection; value from memory).
  */

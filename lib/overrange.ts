@@ -5,7 +5,8 @@
  *   limit: |x| > magnitudeLimit                                                -> OVER_RANGE
  *   slew:  |x[n] - x[n-1]| > slewLimit                                         -> OVER_RANGE
  *   hold:  OVER_RANGE on the `holdSamples` samples behind the last of these, while the analog side recovers
- *   latch: OVER_RANGE_LATCHED from the first of these until a sample with EVENT_CLEAR that is not over range
+ *   latch: OVER_RANGE_LATCHED from the first of these until a sample with EVENT_CLEAR that is none of these itself (one
+ *          that is only held clears it, and its hold goes on)
  *   stuck: the same value `stuckAfter` times in a row, not at a rail           -> STUCK (0: not watched)
  * The samples of a rail before the `consecutive`-th are already gone and stay unflagged. First sample: no slew.
  * Delay 0. Counters stop at their limit. Bound: |x[n] - x[n-1]| < 2^32.

@@ -1,6 +1,6 @@
 /**
  * A piecewise-linear table over rising integer knots: exact at the knots, rounded between, held beyond both ends.
- * Bound: |y difference| * x difference < 2^53, proved by checkTable.
+ * Bound: (|y difference| + 1) * x difference < 2^53, proved by checkTable.
  */
 import { add, divideRound, multiply, subtract } from './arithmetic.ts';
 import type { Problems } from './problems.ts';
@@ -28,7 +28,8 @@ export function checkTable(
     problems.integer(name + '.y', ys[i], low, high, 'keep it in range');
     if (i > 0 && xs[i] <= xs[i - 1]) problems.add(name + '.x', xs[i], 'above ' + xs[i - 1], 'sort the knots');
     if (i > 0) {
-      problems.width(name, (xs[i] - xs[i - 1]) * (ys[i] > ys[i - 1] ? ys[i] - ys[i - 1] : ys[i - 1] - ys[i]), 'set knots closer');
+      // the division that rounds needs one divisor more
+      problems.width(name, (xs[i] - xs[i - 1]) * (1 + (ys[i] > ys[i - 1] ? ys[i] - ys[i - 1] : ys[i - 1] - ys[i])), 'set knots closer');
     }
   }
 }

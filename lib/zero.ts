@@ -14,7 +14,7 @@
  * suspect  (suspectMode) from the first over-range or rail until a zero is taken or EVENT_DEGAUSSED; ZERO_SUSPECT. An
  *          overload on the same sample as EVENT_DEGAUSSED leaves it suspect.
  * Kept over a power cycle: taken, its temperature, suspect. After reset: the factory zero. The zero lane carries
- * taken + tracked. Delay 0, gain 1, no memory that lingers. Bound: meanSamples * |x| < 2^53.
+ * taken + tracked. Delay 0, gain 1, no memory that lingers. Bound: meanSamples * (|x| + 1) < 2^53.
  */
 import { add, clamp, divideRound, magnitude, subtract } from './arithmetic.ts';
 import {
@@ -207,7 +207,7 @@ export function checkZero(c: ZeroConstants, unit: UnitConstants, flow: Flow, pro
   problems.integer('stepSamples', c.stepSamples, 1, 2147483647, 'one count every so many samples');
   problems.integer('authority', c.authority, 0, 2147483647, 'a smaller authority');
   problems.integer('limit', c.limit, 1, 2147483647, 'the largest magnitude that it may give');
-  problems.width('meanSamples * |x|', c.meanSamples * flow.limit, 'average over a shorter time or use fewer guard bits');
+  problems.width('meanSamples * |x|', c.meanSamples * (flow.limit + 1), 'average over a shorter time or use fewer guard bits');
   // the zero travels in 32 bits
   if (flow.limit + c.authority > 2147483647) {
     problems.add('authority', c.authority, 'at most ' + (2147483647 - flow.limit), 'use a smaller authority');

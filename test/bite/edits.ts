@@ -64,7 +64,7 @@ export const EDITS: readonly Edit[] = [
   edit('table', 'divideRound(rise, subtract(xs[i + 1], xs[i]))', 'Math.floor(rise / subtract(xs[i + 1], xs[i]))'),
 
   edit('trim', 'const y = subtract(value[i], offset);', 'const y = subtract(offset, value[i]);'),
-  edit('trim', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, now);', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, before);'),
+  edit('trim', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, now);', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, temperature[0]);'),
   edit('trim', 'const y = shiftRound(multiply(value[i], gainQ24), 24);', 'const y = Math.floor(multiply(value[i], gainQ24) / 16777216);'),
   edit('trim', 'gainQ24 = shiftRound(multiply(unit.gainQ24, interpolate(unit.gainTemperatures, unit.gainsQ24, now)), 24);', 'gainQ24 = interpolate(unit.gainTemperatures, unit.gainsQ24, now);'),
   edit('unit', 'crc ^= (words[i] >> (8 * byte)) & 255;', 'crc ^= (words[i] >> (8 * (3 - byte))) & 255;'),

@@ -83,12 +83,12 @@ describe('a table is refused', () => {
     expect(list[0].allowed.length > 0 && list[0].remedy.length > 0).toBe(true);
   });
 
-  test('when a rise times its step reaches 2^53, and not one below', () => {
-    // 2^31 * 2^22 = 2^53
-    expect(problemsOfTable([-1073741824, 1073741824], [0, 4194304], 33, 0, 4194304))
+  test('when a rise times its step, plus that step for the rounding, reaches 2^53, and not one below', () => {
+    // 2^31 * (2^22 - 1) + 2^31 = 2^53
+    expect(problemsOfTable([-1073741824, 1073741824], [0, 4194303], 33, 0, 4194304))
       .toMatchObject([{ field: 'temperatures', remedy: 'set knots closer' }]);
-    expect(problemsOfTable([-1073741824, 1073741824], [4194304, 0], 33, 0, 4194304)).toHaveLength(1);
-    expect(problemsOfTable([-1073741824, 1073741824], [0, 4194303], 33, 0, 4194304)).toEqual([]);
+    expect(problemsOfTable([-1073741824, 1073741824], [4194303, 0], 33, 0, 4194304)).toHaveLength(1);
+    expect(problemsOfTable([-1073741824, 1073741824], [0, 4194302], 33, 0, 4194304)).toEqual([]);
     expect(problemsOfTable(Array.from({ length: 33 }, (_, i) => i), new Array(33).fill(0))).toEqual([]);
   });
 });

@@ -197,4 +197,11 @@ describe('trims refuse', () => {
     expectRefusal(problemsOf(checkGainTrim, gain, unitOf(), 536870912), '|x| * gain');
     expect(problemsOf(checkGainTrim, gain, unitOf(), 536870912 - 33)).toEqual([]);
   });
+  test('a product that reaches 2^53 only because the gain is rounded up', () => {
+    // (2^24 + 1) * 1.5 = 25165825.5 is used as 25165826; the largest value that 25165825 would leave below 2^53
+    const unit = unitOf({ gainQ24: UNITY_Q24 + 1, gainsQ24: [1.5 * UNITY_Q24] });
+    const most = Math.floor((2 ** 53 - 1 - 2 ** 23) / 25165825);
+    expect(BigInt(most) * 25165826n + 2n ** 23n > 2n ** 53n).toBe(true);
+    expectRefusal(problemsOf(checkGainTrim, gain, unit, most), '|x| * gain');
+  });
 });

@@ -212,10 +212,10 @@ describe('zero refuses', () => {
     expectRefusal(problemsOf(checkZero, PLAIN, unitOf({ factoryZero: 1001 }), 1000), 'factoryZero');
     expectRefusal(problemsOf(checkZero, PLAIN, unitOf({ factoryZero: -1001 }), 1000), 'factoryZero');
   });
-  test('a mean whose sum reaches 2^53: 2^24 samples of 2^29', () => {
+  test('a mean whose sum, plus the count for the rounding, reaches 2^53: 2^24 samples of 2^29 - 1', () => {
     const long = { ...PLAIN, meanSamples: 16777216 };
-    expectRefusal(problemsOf(checkZero, long, unitOf(), 536870912), 'meanSamples * |x|');
-    expect(problemsOf(checkZero, long, unitOf(), 536870911)).toEqual([]);
+    expectRefusal(problemsOf(checkZero, long, unitOf(), 536870911), 'meanSamples * |x|');
+    expect(problemsOf(checkZero, long, unitOf(), 536870910)).toEqual([]);
   });
   test('codes and readings', () => {
     expectRefusal(problemsOf(checkZero, PLAIN, unitOf(), 1000, 'codes'), 'order');
