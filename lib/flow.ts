@@ -44,6 +44,7 @@ export class Flow {
   /** The values that a stage gives must fit 32 bits. */
   give(problems: Problems, limit: number, remedy: string): void {
     if (limit > 2147483647) problems.add('output', limit, 'at most 2147483647', remedy);
-    this.limit = limit;
+    // what does not fit is told once, not again by every stage behind
+    this.limit = limit > 2147483647 ? 2147483647 : limit;
   }
 }

@@ -65,7 +65,8 @@ function show(
     progress: (scenario, share) => progress.tell(scenario, share),
     observer: options.csv === null ? undefined : readingsCsv(options.csv),
   });
-  if (!options.json && !options.quiet) console.log(`${probe.name}: ${probe.about}\n\n${TABLE_HEAD}`);
+  // told with the first row, so that nothing is printed for a probe that tuning refuses
+  let head = options.json || options.quiet ? '' : `${[probe.name, probe.about].filter(Boolean).join(': ')}\n\n${TABLE_HEAD}\n`;
   for (;;) {
     const step = proving.next();
     progress.wipe();
@@ -75,7 +76,8 @@ function show(
       return step.value;
     }
     if (options.json || (options.quiet && step.value.holds)) continue;
-    console.log(rowLines(step.value, paint).join('\n'));
+    console.log(head + rowLines(step.value, paint).join('\n'));
+    head = '';
   }
 }
 
