@@ -380,6 +380,7 @@ const scenario = group('one run of the probe', {
     decay_ms: number('time constant of its decay', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
   }, 'absent'),
   events: list('events, in any order', event, { max: 1000, optional: true }),
+  long: flag('played only when all scenarios are asked for', false),
 });
 
 const scenarioName = text('the scenario it is measured in');
