@@ -6,7 +6,8 @@
  * line between points is exact. The outer field adds to the field in the gap and does not magnetise the core. An open
  * jaw is a gap so long that openJaw_percent of the sensitivity is left, so the memory loses what a long gap takes from
  * it, and the sensor is in the outer field as it is, without concentration. Each closing draws the joint gap anew, also
- * the one before the start. The core begins demagnetised. Gap short against its width; no other stray field; no dependence on temperature.
+ * the one before the start. The core begins demagnetised. Gap short against its width; no other stray field; nothing
+ * depends on temperature.
  */
 import { resolve } from 'node:path';
 import type { CoreUnit } from './draw.ts';

@@ -76,7 +76,7 @@ export class JilesAthertonCircuit implements MagneticCircuit {
     // Man - Mirr, since M = c Man + (1 - c) Mirr
     const behind = (sense * (saturation_A_per_m * value - magnetisation)) / (1 - reversibility);
     let irreversible = 0;
-    if (true) {
+    if (behind > 0) {
       irreversible = behind / Math.max(LEAST_DENOMINATOR * pinning_A_per_m, pinning_A_per_m - coupling * behind);
     }
     return (reversibility * slope + (1 - reversibility) * irreversible) / (1 - coupling * reversibility * slope);

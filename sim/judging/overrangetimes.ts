@@ -11,9 +11,8 @@
 import { gridFactorOf } from '../hardware/grid.ts';
 import { openCurrent, type CurrentSource } from '../current/source.ts';
 import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
-import { timeText, type Measure, type Measured } from './measures.ts';
+import { shareOf, timeText, type Measure, type Measured } from './measures.ts';
 import { UNUSABLE, type Readings } from './play.ts';
-import { shareOf } from './transition.ts';
 
 type Of<M extends Requirement['measure']> = Extract<Requirement, { measure: M }>;
 

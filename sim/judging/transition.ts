@@ -5,7 +5,7 @@
  * beyond the top state behind the 50 % instant, as a share of the step.
  */
 import type { Requirement, Scenario } from '../probe/fields.ts';
-import { timeText, type Measure, type Measured } from './measures.ts';
+import { type Measure, type Measured, shareOf, timeText } from './measures.ts';
 import type { Readings } from './play.ts';
 import { StepStates } from './stepstates.ts';
 
@@ -128,8 +128,4 @@ export class Overshoot extends StepMeasure {
         (scatter > value / 4 ? `; its states scatter by ${scatter.toPrecision(2)} % of the step (noise)` : ''),
     };
   }
-}
-
-export function shareOf(value: number, limit: number): number {
-  return value === 0 ? 0 : value / limit;
 }

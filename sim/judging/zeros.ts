@@ -7,12 +7,12 @@
 import { TRACKING, ZERO_SUSPECT } from '../../lib/index.ts';
 import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import { AllanStream, slopeWords } from './allan.ts';
+import { temperaturesOf } from './band.ts';
 import { madeScenario, startOf } from './made.ts';
-import { timeText, type Measure, type Measured } from './measures.ts';
+import { shareOf, timeText, type Measure, type Measured } from './measures.ts';
 import { UNUSABLE, type Observer, type Readings } from './play.ts';
 import { Epoch } from './stepstates.ts';
 import type { Study } from './study.ts';
-import { shareOf } from './transition.ts';
 
 type Of<M extends Requirement['measure']> = Extract<Requirement, { measure: M }>;
 
@@ -28,7 +28,7 @@ export class ZeroOverTemperature implements Study {
 
   constructor(private readonly requirement: Of<'zeroOverTemperature'>, probe: Probe) {
     const { lowest_C, highest_C } = requirement;
-    const temperatures = [...new Set([lowest_C, ...(lowest_C < 25 && 25 < highest_C ? [25] : []), highest_C])];
+    const temperatures = temperaturesOf(lowest_C, highest_C);
     const { zeroSeconds, memorySeconds, readingSeconds } = startOf(probe);
     this.takesZero = zeroSeconds > 0;
     const wanted = Math.min(MEAN_READINGS * readingSeconds, MOST_MEAN_SECONDS);

@@ -112,7 +112,7 @@ describe('every core', () => {
     expect(Math.abs(open - 0.02 * closed)).toBeLessThan(name === 'linear' ? 1e-15 : bound);
   });
 
-  test.each(memories.slice(1))('%s: an overload leaves remanence, a decaying current in the coil takes it', (_, memory) => {
+  test.each(memories.slice(1))('%s: an overload leaves remanence, a decaying coil current takes it', (_, memory) => {
     const core = newCore({ ...memory, coilTurns: 50 });
     const perAmpere = teslaPerAmpere(coreUnit(memory));
     const remanenceAmperes = field(core, [0, 2000, 0])[2] / perAmpere;
