@@ -33,6 +33,20 @@ export class GridPhase {
   }
 }
 
+/** sin(2 pi cycles), in the half turn nearest to zero, where the rounding of 2 pi weighs least. */
+export function sineOfCycles(cycles: number): number {
+  return Math.sin(2 * Math.PI * (cycles - Math.round(cycles)));
+}
+
+export function cosineOfCycles(cycles: number): number {
+  return Math.cos(2 * Math.PI * (cycles - Math.round(cycles)));
+}
+
+/** frequencyHz * seconds modulo 1, exact to 2^-51 as above. */
+export function phaseAfter(frequencyHz: number, seconds: number): number {
+  return new GridPhase(frequencyHz, seconds).at(1);
+}
+
 function upperHalf(value: number): number {
   const scaled = value * SPLITTER;
   return scaled - (scaled - value);

@@ -3,6 +3,10 @@
  * rising edge, so the current is halfway at t = 0; the middle of the falling edge comes after duty_percent of the
  * period. Edges are centred, so their duration does not change the mean: low + (high - low) * duty. Duty 0 and 100 %
  * are steady. Edges of zero length: high from phase 0 on, low from phase duty on.
+ *
+ * The voltage of the conductor makes the same trapezoid of height swing_V, up where the current goes up. Its slew at
+ * point n is the mean of dv/dt over the step around it, (v(n + 1/2) - v(n - 1/2)) / stepSeconds: dv/dt itself inside an
+ * edge, and with an area of exactly one swing for each edge, however short against the step.
  */
 import { GridPhase } from './phase.ts';
 import { ROUNDING, type ShapeSpec } from './shape.ts';
@@ -16,19 +20,26 @@ const ON_THE_EDGE = 1e-9;
 
 export class PulseWidth implements CurrentSource {
   readonly endSeconds = null;
+  readonly swings: boolean;
   private readonly low: number;
   private readonly high: number;
   private readonly duty: number;
   private readonly edge: number; // in periods
   private readonly phase: GridPhase;
+  private readonly halfStepPhase: GridPhase;
+  private readonly slewPerShare: number; // V/s
+  private first = 0; // of the last call
   private point = 0;
 
   constructor(spec: ShapeSpec<'pwm'>, stepSeconds: number) {
-    const { low_A, high_A, frequency_Hz, duty_percent, edge_us } = spec;
+    const { low_A, high_A, frequency_Hz, duty_percent, edge_us, swing_V } = spec;
     this.low = low_A;
     this.high = high_A;
     this.duty = duty_percent / 100;
     this.phase = new GridPhase(frequency_Hz, stepSeconds);
+    this.halfStepPhase = new GridPhase(frequency_Hz, stepSeconds / 2);
+    this.slewPerShare = (Math.sign(high_A - low_A) * swing_V) / stepSeconds;
+    this.swings = this.slewPerShare !== 0 && duty_percent > 0 && duty_percent < 100;
     const shorter = Math.min(duty_percent, 100 - duty_percent) / 100;
     const edge = edge_us * 1e-6 * frequency_Hz;
     if (shorter > 0 && edge > shorter * (1 + ROUNDING)) {
@@ -43,10 +54,36 @@ export class PulseWidth implements CurrentSource {
     if (this.duty === 0 || this.duty === 1) amperes.fill(this.duty === 0 ? this.low : this.high, 0, count);
     else if (this.edge <= ON_THE_EDGE) this.jumps(amperes, count);
     else this.ramps(amperes, count);
+    this.first = this.point;
     this.point += count;
   }
 
+  slew(voltsPerSecond: Float64Array, count: number): void {
+    const { halfStepPhase, slewPerShare, first } = this;
+    if (!this.swings) {
+      voltsPerSecond.fill(0, 0, count);
+      return;
+    }
+    let before = this.shareAt(halfStepPhase.at(2 * first - 1));
+    for (let i = 0; i < count; i++) {
+      const after = this.shareAt(halfStepPhase.at(2 * (first + i) + 1));
+      voltsPerSecond[i] = (after - before) * slewPerShare;
+      before = after;
+    }
+  }
+
   close(): void {}
+
+  /** 0 at the low level, 1 at the high one. */
+  private shareAt(phase: number): number {
+    const { duty, edge } = this;
+    if (edge <= ON_THE_EDGE) return phase + ON_THE_EDGE < duty || phase + ON_THE_EDGE >= 1 ? 1 : 0;
+    const half = edge / 2;
+    if (phase < half) return 0.5 + phase / edge;
+    if (phase <= duty - half) return 1;
+    if (phase < duty + half) return 0.5 - (phase - duty) / edge;
+    return phase <= 1 - half ? 0 : 0.5 + (phase - 1) / edge;
+  }
 
   private jumps(amperes: Float64Array, count: number): void {
     const { phase, low, high, duty, point } = this;

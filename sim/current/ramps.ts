@@ -1,16 +1,13 @@
 /**
- * Currents made of straight lines between corners: staircase and step. An edge starts at the boundary and is linear;
- * behind the last corner the current stays. Two corners at one time are a jump, and the point on it is behind it.
- * Corners are kept in grid steps, and one within 1e-6 of a step of a grid point is put on it: a boundary that falls on
- * the grid must not move by a point because 1 / rate was rounded.
+ * Currents made of straight lines between corners: staircase, step, pulse and ramp. An edge starts at the boundary and
+ * is linear; behind the last corner the current stays. Two corners at one time are a jump, and the point on it is
+ * behind it. Corners are kept in grid steps (place.ts).
  */
+import { NoSwing } from './noswing.ts';
+import { gridPlace } from './place.ts';
 import { ROUNDING, type ShapeSpec } from './shape.ts';
-import type { CurrentSource } from './source.ts';
 
-const ON_THE_GRID = 1e-6;
-
-export class Ramps implements CurrentSource {
-  readonly endSeconds = null;
+export class Ramps extends NoSwing {
   /** Corners in grid steps, not falling, and the current at each; the first one stands at 0. */
   private readonly position: number[] = [];
   private readonly level: number[] = [];
@@ -19,6 +16,7 @@ export class Ramps implements CurrentSource {
   private point = 0;
 
   constructor(stepSeconds: number, fromAmperes: number) {
+    super();
     this.stepSeconds = stepSeconds;
     this.append(0, fromAmperes);
   }
@@ -48,12 +46,8 @@ export class Ramps implements CurrentSource {
     this.point = point + count;
   }
 
-  close(): void {}
-
   private append(seconds: number, amperes: number): void {
-    const position = seconds / this.stepSeconds;
-    const whole = Math.round(position);
-    this.position.push(Math.abs(position - whole) <= ON_THE_GRID ? whole : position);
+    this.position.push(gridPlace(seconds, this.stepSeconds));
     this.level.push(amperes);
   }
 }
@@ -72,5 +66,23 @@ export function staircase({ levels_A, hold_ms, edge_us }: ShapeSpec<'staircase'>
   const edgeSeconds = Math.min(edge_us / 1e6, hold_ms / 1e3);
   const ramps = new Ramps(stepSeconds, levels_A[0]);
   for (let k = 1; k < levels_A.length; k++) ramps.edge((k * hold_ms) / 1e3, edgeSeconds, levels_A[k]);
+  return ramps;
+}
+
+export function ramp({ from_A, to_A, at_ms, rise_ms }: ShapeSpec<'ramp'>, stepSeconds: number): Ramps {
+  const ramps = new Ramps(stepSeconds, from_A);
+  ramps.edge(at_ms / 1e3, rise_ms / 1e3, to_A);
+  return ramps;
+}
+
+/** Both edges last the same, so the width between their starts is that between their middles. */
+export function pulse({ base_A, peak_A, at_ms, width_us, edge_us }: ShapeSpec<'pulse'>, stepSeconds: number): Ramps {
+  if (edge_us > width_us * (1 + ROUNDING)) {
+    throw new RangeError(`edge_us: found ${edge_us}, allowed at most ${width_us}, the width of the pulse (width_us)`);
+  }
+  const edgeSeconds = Math.min(edge_us, width_us) / 1e6;
+  const ramps = new Ramps(stepSeconds, base_A);
+  ramps.edge(at_ms / 1e3, edgeSeconds, peak_A);
+  ramps.edge((at_ms * 1e3 + width_us) / 1e6, edgeSeconds, base_A);
   return ramps;
 }

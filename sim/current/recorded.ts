@@ -7,8 +7,8 @@
 import { resolve } from 'node:path';
 import { columnUnit, CsvError, CsvReader, findColumn } from '../recorded/csv.ts';
 import { AMPERES_POWER, scaled, SECONDS_POWER } from '../recorded/units.ts';
+import { NoSwing } from './noswing.ts';
 import type { ShapeSpec } from './shape.ts';
-import type { CurrentSource } from './source.ts';
 
 /** Steps by which a point may stand behind the last row and still belong to it: both were rounded. */
 const ON_THE_LAST_ROW = 1e-6;
@@ -16,8 +16,8 @@ const ON_THE_LAST_ROW = 1e-6;
 /** As for every other current. SCPI-99, volume 1, 7.2.1: 9.9E37 stands for infinity, 9.91E37 for not a number. */
 const MOST_AMPERES = 1e6;
 
-export class RecordedCurrent implements CurrentSource {
-  endSeconds: number | null = null;
+export class RecordedCurrent extends NoSwing {
+  override endSeconds: number | null = null;
   private readonly reader: CsvReader;
   private readonly row: Float64Array;
   private readonly stepSeconds: number;
@@ -35,6 +35,7 @@ export class RecordedCurrent implements CurrentSource {
   private amperesB: number;
 
   constructor(spec: ShapeSpec<'file'>, stepSeconds: number, folder: string) {
+    super();
     this.stepSeconds = stepSeconds;
     this.reader = new CsvReader(resolve(folder, spec.path), spec.path);
     try {
@@ -79,7 +80,7 @@ export class RecordedCurrent implements CurrentSource {
     this.point = point + count;
   }
 
-  close(): void {
+  override close(): void {
     this.reader.close();
   }
 

@@ -1,10 +1,9 @@
 /** offset + peak * sin(2 pi (f t + phase / 360)). */
-import { GridPhase } from './phase.ts';
+import { NoSwing } from './noswing.ts';
+import { GridPhase, sineOfCycles } from './phase.ts';
 import type { ShapeSpec } from './shape.ts';
-import type { CurrentSource } from './source.ts';
 
-export class Sine implements CurrentSource {
-  readonly endSeconds = null;
+export class Sine extends NoSwing {
   private readonly peak: number;
   private readonly offset: number;
   private readonly startPhase: number;
@@ -12,6 +11,7 @@ export class Sine implements CurrentSource {
   private point = 0;
 
   constructor({ peak_A, frequency_Hz, offset_A, phase_deg }: ShapeSpec<'sine'>, stepSeconds: number) {
+    super();
     this.peak = peak_A;
     this.offset = offset_A;
     this.startPhase = phase_deg / 360;
@@ -20,13 +20,7 @@ export class Sine implements CurrentSource {
 
   next(amperes: Float64Array, count: number): void {
     const { phase, startPhase, peak, offset, point } = this;
-    for (let i = 0; i < count; i++) {
-      const cycles = phase.at(point + i) + startPhase;
-      // the half turn nearest to zero, where the rounding of 2 pi weighs least
-      amperes[i] = offset + peak * Math.sin(2 * Math.PI * (cycles - Math.round(cycles)));
-    }
+    for (let i = 0; i < count; i++) amperes[i] = offset + peak * sineOfCycles(phase.at(point + i) + startPhase);
     this.point = point + count;
   }
-
-  close(): void {}
 }

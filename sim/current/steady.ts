@@ -1,17 +1,15 @@
 /** A steady current: the same at every grid point. */
-import type { CurrentSource } from './source.ts';
+import { NoSwing } from './noswing.ts';
 
-export class Steady implements CurrentSource {
-  readonly endSeconds = null;
+export class Steady extends NoSwing {
   private readonly level: number;
 
   constructor(amperes: number) {
+    super();
     this.level = amperes;
   }
 
   next(amperes: Float64Array, count: number): void {
     amperes.fill(this.level, 0, count);
   }
-
-  close(): void {}
 }

@@ -2,6 +2,7 @@
  * One unit of the hardware: the same tree as in the probe file with every {nominal, tolerance} replaced by the value
  * that this unit has. Trial 0 has nominal parts; from trial 1 each part is uniform within nominal +- tolerance.
  * Each field draws from a stream of its own, named after its path, so a new field never changes the others.
+ * The gap at the joint stays nominal here: the core draws it anew whenever the jaw closes.
  */
 import type { Toleranced } from '../probe/describe.ts';
 import type { Probe } from '../probe/fields.ts';
@@ -9,11 +10,14 @@ import { RandomStream } from './random.ts';
 
 type Drawn<T> = T extends Toleranced ? number : T extends object ? { [K in keyof T]: Drawn<T[K]> } : T;
 
-const PARTS = ['supply_V', 'core', 'sensor', 'amplifier', 'converter', 'thermometer'] as const;
+const PARTS = ['supply_V', 'core', 'sensor', 'coupling', 'amplifier', 'converter', 'thermometer'] as const;
+
+const DRAWN_AT_EACH_CLOSING = 'core.jointGap_um';
 
 export type Unit = Drawn<Pick<Probe, (typeof PARTS)[number]>>;
 export type CoreUnit = Unit['core'];
 export type SensorUnit = Unit['sensor'];
+export type CouplingUnit = NonNullable<Unit['coupling']>;
 export type AmplifierUnit = Unit['amplifier'];
 export type ConverterUnit = Unit['converter'];
 export type ThermometerUnit = NonNullable<Unit['thermometer']>;
@@ -23,7 +27,7 @@ type Choose = (part: Toleranced, path: string) => number;
 export function drawUnit(probe: Probe, seed: number, trial: number): Unit {
   if (trial === 0) return nominalUnit(probe);
   return unitOf(probe, ({ nominal, tolerance }, path) => {
-    if (tolerance === 0) return nominal;
+    if (tolerance === 0 || path === DRAWN_AT_EACH_CLOSING) return nominal;
     return nominal + tolerance * (2 * new RandomStream(seed, trial, path).uniform() - 1);
   });
 }

@@ -1,12 +1,15 @@
 /**
  * The straight line from current to code that nominal parts have: what tuning may know of the hardware.
  *   code = restCode + codesPerAmpere * current   at 25 °C and nominal supply, in the numbers of the converter's format
+ * It is the tangent at zero current: magnetic memory, the sensor's third order and the bow of the converter bend the
+ * real curve away from it, and the slope of the bow at rest is in it. Sensor, amplifier and converter have one
+ * temperature here.
  * codesPerAmpere is negative when the amplifier inverts. A switched bias that is demodulated removes what lies behind
  * the Hall plate: an offset over temperature is then what demodulation leaves of it.
  */
 import type { Probe } from '../probe/fields.ts';
 import { amplifierVolts } from './amplifier.ts';
-import { formatOffset, lsbVolts } from './converter.ts';
+import { bowCodes, converterLine, formatOffset } from './converter.ts';
 import { teslaPerAmpere } from './core.ts';
 import { nominalUnit, type Unit } from './draw.ts';
 import { REFERENCE_CELSIUS, sensorLine } from './sensor.ts';
@@ -46,10 +49,13 @@ function nominalOffset(probe: Probe, celsius: number): number {
 }
 
 function transferOf(unit: Unit, celsius: number): Transfer {
+  const surroundings = { sensorCelsius: celsius, converterCelsius: celsius, supplyRatio: 1 };
   const fieldTeslaPerAmpere = teslaPerAmpere(unit.core);
-  const line = sensorLine(unit.sensor, { celsius, supplyRatio: 1 });
-  const amplifierRestVolts = amplifierVolts(unit.amplifier, line.restVolts);
-  const codesPerVolt = 1 / lsbVolts(unit.converter, 1);
+  const line = sensorLine(unit.sensor, surroundings);
+  const amplifierRestVolts = amplifierVolts(unit.amplifier, line.restVolts, celsius);
+  const { codesPerVolt: straight, offsetCodes } = converterLine(unit.converter, surroundings);
+  const restOnLine = amplifierRestVolts * straight + offsetCodes;
+  const codesPerVolt = straight * (1 + bowSlope(unit, restOnLine));
   const codesPerTesla = line.voltsPerTesla * unit.amplifier.gain * codesPerVolt;
   return {
     fieldTeslaPerAmpere,
@@ -59,7 +65,12 @@ function transferOf(unit: Unit, celsius: number): Transfer {
     amplifierRestVolts,
     codesPerVolt,
     codesPerAmpere: codesPerTesla * fieldTeslaPerAmpere,
-    restCode: amplifierRestVolts * codesPerVolt - formatOffset(unit.converter),
+    restCode: restOnLine + bowCodes(unit.converter, restOnLine) - formatOffset(unit.converter),
     plateCodes: unit.sensor.bias === 'reversal' ? codesPerTesla * unit.sensor.plateOffset_mT * 1e-3 : 0,
   };
+}
+
+/** Exact for the parabola of the bow wherever both points are between its ends. */
+function bowSlope({ converter }: Unit, codes: number): number {
+  return (bowCodes(converter, codes + 1) - bowCodes(converter, codes - 1)) / 2;
 }

@@ -35,6 +35,12 @@ export class ErrorShape {
     s[8] += error * error;
   }
 
+  /** false: the current varies by less than 0.1 % (RMS), so that a gain cannot be told from a zero. */
+  private currentMoves(): boolean {
+    const [t, , , tt] = this.sums;
+    return tt - (t * t) / this.count > 1e-6 * tt;
+  }
+
   /** Parts that the readings cannot tell apart (a current that never changes has no gain) are left at zero. */
   parts(): Parts {
     const n = this.count;
@@ -44,7 +50,7 @@ export class ErrorShape {
     const covTS = ts - (t * s) / n;
     const covTE = te - (t * e) / n;
     const covSE = se - (s * e) / n;
-    const movesT = varT > 1e-12 * (tt + 1e-30);
+    const movesT = this.currentMoves();
     const movesS = varS > 1e-12 * (ss + 1e-30);
     let gain = 0;
     let lag = 0;
@@ -62,11 +68,17 @@ export class ErrorShape {
     return { offsetAmperes: offset, gain, lagSeconds: lag, restRmsAmperes: Math.sqrt(Math.max(0, rest) / n) };
   }
 
+  private nameOfOffset(): string {
+    const always = this.sums[0] / this.count;
+    if (this.currentMoves() || always === 0) return 'zero';
+    return `zero or gain: the judged current is always ${always.toPrecision(3)} A`;
+  }
+
   /** The part that makes up most of the error at a point, in words. */
   words(point: Point): string {
     const { offsetAmperes, gain, lagSeconds, restRmsAmperes } = this.parts();
     const shares: [number, string][] = [
-      [offsetAmperes, `the reading is off by a steady ${signed(offsetAmperes)} A (zero)`],
+      [offsetAmperes, `the reading is off by a steady ${signed(offsetAmperes)} A (${this.nameOfOffset()})`],
       [gain * point.truth, `the reading is ${signed(gain * 100)} % of the true current off (gain)`],
       [-lagSeconds * point.slope, lagSeconds > 0
         ? `the reading lags the stated delay by ${time(lagSeconds)} where the current changes by ${Math.abs(point.slope).toPrecision(3)} A/s`

@@ -3,15 +3,21 @@
  * that are not judged, are left out of the error (they are counted elsewhere). A measure that its scenario cannot support
  * says why instead of guessing.
  */
-import type { Requirement, Scenario } from '../probe/fields.ts';
+import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import { ErrorShape } from './errorshape.ts';
+import { longestPeriodSeconds } from './period.ts';
 import { UNUSABLE, type Observer, type Readings, type Record } from './play.ts';
+
+export type Unit = 'A' | 'ms' | '%' | 'Hz' | '°' | 'dB' | 'bits';
+export type Better = 'less' | 'more';
 
 export interface Measured {
   /** In `unit`. */
   value: number;
   limit: number;
-  unit: 'A' | 'ms';
+  unit: Unit;
+  /** 'more': the limit is a least value. Left out: 'less'. */
+  better?: Better;
   /** Share of the allowance used: 1 is all of it. */
   share: number;
   where: string;
@@ -26,20 +32,52 @@ export interface Measure extends Observer {
 
 type Allowance = { percentOfReading: number; percentOfRange: number; amperes: number };
 
-export function measureFor(requirement: Requirement, scenario: Scenario, rangeAmperes: number): Measure {
+/** What a requirement asks for, for a row that could not be measured. */
+export function limitOf(requirement: Requirement): { limit: number; unit: Unit; better: Better } {
   switch (requirement.measure) {
-    case 'reading': return new ReadingError(requirement, rangeAmperes);
+    case 'reading':
     case 'mean':
     case 'trueRms':
-    case 'acRms': return new RecordError(requirement, rangeAmperes);
-    case 'noise': return new NoiseOfReading(requirement.limit_A);
-    case 'settling': return new SettlingTime(requirement, scenario);
-    case 'swallowed': throw new TypeError('swallowed: told from the constants, not from a scenario');
+    case 'acRms':
+    case 'band': return { limit: requirement.amperes, unit: 'A', better: 'less' };
+    case 'gain':
+    case 'overshoot': return { limit: requirement.limit_percent, unit: '%', better: 'less' };
+    case 'phase': return { limit: requirement.limit_deg, unit: '°', better: 'less' };
+    case 'bandwidth': return { limit: requirement.atLeast_Hz, unit: 'Hz', better: 'more' };
+    case 'sinad': return { limit: requirement.atLeast_dB, unit: 'dB', better: 'more' };
+    case 'effectiveBits': return { limit: requirement.atLeast_bits, unit: 'bits', better: 'more' };
+    case 'settling':
+    case 'transition':
+    case 'overRangeDelay':
+    case 'overRangeRecovery': return { limit: requirement.limit_ms, unit: 'ms', better: 'less' };
+    case 'noise':
+    case 'zeroOverTemperature':
+    case 'zeroAfterOverload':
+    case 'zeroOverTime':
+    case 'swallowed': return { limit: requirement.limit_A, unit: 'A', better: 'less' };
   }
+}
+
+/** Share of an allowance; nothing used of an allowance of nothing is no share of it. */
+export function shareOf(value: number, limit: number): number {
+  return value === 0 ? 0 : Math.abs(value) / limit;
 }
 
 export function allowed(allowance: Allowance, trueAmperes: number, rangeAmperes: number): number {
   return (allowance.percentOfReading / 100) * Math.abs(trueAmperes) + (allowance.percentOfRange / 100) * rangeAmperes + allowance.amperes;
+}
+
+type RecordAllowance = Allowance & { measure: 'mean' | 'trueRms' | 'acRms'; meter: string };
+
+/** A statistic of less than a period is a matter of where the window begins. */
+function shortWindow(probe: Probe, meter: string, { name, current }: Scenario): string | null {
+  const period = longestPeriodSeconds(current);
+  const spec = probe.chain.find((stage) => stage.stage === 'meter' && stage.name === meter);
+  if (period === null || spec?.stage !== 'meter') return null;
+  // a window that is meant to be a period may be off by rounding
+  if (spec.window_ms / 1e3 >= period * (1 - 1e-6)) return null;
+  return `a window of meter "${meter}" (${timeText(spec.window_ms / 1e3)}) is shorter than a period of ` +
+    `the current of "${name}" (${timeText(period)})`;
 }
 
 /** The point where an error uses most of its allowance. */
@@ -52,7 +90,7 @@ class Worst {
   seconds = 0;
 
   hear(error: number, limit: number, truth: number, slope: number, seconds: number): void {
-    const share = Math.abs(error) / limit;
+    const share = shareOf(error, limit);
     if (!(share > this.share)) return;
     this.share = share;
     this.error = error;
@@ -70,7 +108,7 @@ class Worst {
   }
 }
 
-class ReadingError implements Measure {
+export class ReadingError implements Measure {
   passes = 1;
   private readonly worst = new Worst();
   private readonly shape = new ErrorShape();
@@ -102,18 +140,28 @@ class ReadingError implements Measure {
   }
 }
 
-class RecordError implements Measure {
+export class RecordError implements Measure {
   passes = 1;
   private readonly worst = new Worst();
   private readonly shape = new ErrorShape();
   private left = 0;
   private flagged = 0;
-  private cycleless = 0;
+  /** Why no window of this meter can show this current; null: they can. */
+  private readonly tooShort: string | null;
 
-  constructor(
-    private readonly requirement: Extract<Requirement, { measure: 'mean' | 'trueRms' | 'acRms' }>,
-    private readonly rangeAmperes: number,
-  ) {}
+  constructor(private readonly requirement: RecordAllowance, private readonly probe: Probe, scenario: Scenario) {
+    this.tooShort = shortWindow(probe, requirement.meter, scenario);
+  }
+
+  /** The worst error as a share of the true value there. */
+  get worstShareOfTruth(): number {
+    return this.worst.error / this.worst.truth;
+  }
+
+  /** Windows that were judged and not flagged. */
+  get windows(): number {
+    return this.left;
+  }
 
   readings(): void {}
 
@@ -123,22 +171,22 @@ class RecordError implements Measure {
       this.flagged++;
       return;
     }
-    if (record.cycles === 0) this.cycleless++;
     const statistic = this.requirement.measure;
     const truth = record.truth[statistic];
     const error = record[statistic] - truth;
     this.left++;
     this.shape.hear(error, truth, 0);
-    this.worst.hear(error, allowed(this.requirement, truth, this.rangeAmperes), truth, 0, record.seconds);
+    this.worst.hear(error, allowed(this.requirement, truth, this.probe.range_A), truth, 0, record.seconds);
   }
 
   result(): Measured | string {
+    if (this.tooShort !== null) return this.tooShort;
     if (this.left === 0) return nothingLeft(this.flagged, `window of meter "${this.requirement.meter}"`);
     return this.worst.measured(this.shape.words(this.worst));
   }
 }
 
-class NoiseOfReading implements Measure {
+export class NoiseOfReading implements Measure {
   passes = 1;
   private count = 0;
   private mean = 0;
@@ -168,14 +216,14 @@ class NoiseOfReading implements Measure {
     if (this.count < 2) return nothingLeft(this.flagged, 'reading');
     const value = Math.sqrt(this.squares / (this.count - 1));
     return {
-      value, limit: this.limitAmperes, unit: 'A', share: value / this.limitAmperes, where: `over ${this.count} readings`,
+      value, limit: this.limitAmperes, unit: 'A', share: shareOf(value, this.limitAmperes), where: `over ${this.count} readings`,
       shape: `the readings scatter by ${value.toPrecision(3)} A (standard deviation)`,
     };
   }
 }
 
 /** First pass: the end value, mean of the last tenth. Second pass: the last reading outside the band around it. */
-class SettlingTime implements Measure {
+export class SettlingTime implements Measure {
   passes = 2;
   private endSum = 0;
   private endCount = 0;

@@ -8,6 +8,7 @@ import { Bench, newCodeBlock, type CodeBlock } from '../hardware/bench.ts';
 import { CLIP_AMPLIFIER, CLIP_CONVERTER, CLIP_SENSOR } from '../hardware/clip.ts';
 import type { Probe, Scenario } from '../probe/fields.ts';
 import type { Tuned } from '../tuning/tune.ts';
+import { Influence } from './influence.ts';
 import { JudgedTimes } from './judgedtimes.ts';
 import { chainMemory } from './memory.ts';
 import { Truth } from './truth.ts';
@@ -20,10 +21,14 @@ const BLOCK = 256;
 /** A block of readings at the end of the chain, with the truth. */
 export interface Readings {
   count: number;
+  /** The delay that the chain states. */
+  delaySeconds: number;
   seconds: Float64Array;
   amperes: Float64Array;
   /** True current, delayed as the chain states. */
   truth: Float64Array;
+  /** True current at the instant of the reading, not delayed. */
+  now: Float64Array;
   /** Change of that truth, in amperes a second. */
   slope: Float64Array;
   status: Int32Array;
@@ -63,6 +68,8 @@ export interface Played {
   unusable: number;
   /** Judged readings that are flagged although nothing had happened to them. */
   unexplained: number;
+  /** Judged readings that clipping has a part in although their status is clean. */
+  hiddenClipping: number;
   clamped: number;
   /** A/D samples whose period saw a node clip. */
   clipped: { sensor: number; amplifier: number; converter: number };
@@ -95,7 +102,7 @@ class Player {
   private readonly bench: Bench;
   private readonly chain: Chain;
   private readonly truth: Truth;
-  private readonly codes: CodeBlock = newCodeBlock(BLOCK);
+  private readonly codes: CodeBlock;
   private readonly block = new Block(BLOCK);
   private readonly out: Readings;
   private readonly ratio: number;
@@ -109,9 +116,11 @@ class Player {
   private poweredAt = 0;
   private lastCause = -Infinity;
   private readonly causes = new Float64Array(BLOCK);
+  private readonly influence: Influence;
+  private readonly influenced = new Uint8Array(BLOCK);
 
   constructor(
-    private readonly probe: Probe, scenario: Scenario, private readonly tuned: Tuned,
+    private readonly probe: Probe, private readonly scenario: Scenario, private readonly tuned: Tuned,
     private readonly options: PlayOptions, private readonly observers: readonly Observer[],
     private readonly pass: number, private readonly passes: number,
   ) {
@@ -119,17 +128,19 @@ class Player {
     this.chain = new Chain(tuned.constants, tuned.makers);
     this.ratio = tuned.ratios.at(-1)!;
     this.memorySamples = chainMemory(tuned.constants.design, tuned.ratios);
+    this.influence = new Influence(tuned.constants.design, tuned.ratios, probe.sensor.biasPhase_samples);
     this.meterReaders = [...tuned.meters].map(([name, stage]) => new MeterReader(name, stage, this.chain.stages[stage], tuned));
     const longestWindow = Math.max(0, ...this.meterReaders.map((reader) => reader.windowInputs));
+    this.codes = newCodeBlock(samplesAtOnce(tuned));
     this.truth = new Truth(Math.ceil(tuned.delaySamples) + longestWindow + 2 * BLOCK + 2 * this.ratio);
     this.times = new JudgedTimes(scenario);
     this.zeroStage = tuned.constants.design.findIndex((stage) => stage.kind === 'zero');
     this.out = {
-      count: 0, seconds: new Float64Array(BLOCK), amperes: new Float64Array(BLOCK), truth: new Float64Array(BLOCK),
-      slope: new Float64Array(BLOCK), status: new Int32Array(BLOCK), judged: new Uint8Array(BLOCK),
+      count: 0, delaySeconds: tuned.delaySamples / (probe.converter.rate_kHz * 1e3), seconds: new Float64Array(BLOCK),
+      amperes: new Float64Array(BLOCK), truth: new Float64Array(BLOCK), now: new Float64Array(BLOCK), slope: new Float64Array(BLOCK), status: new Int32Array(BLOCK), judged: new Uint8Array(BLOCK),
     };
     this.played = {
-      samples: this.bench.totalSamples, readings: 0, judged: 0, unusable: 0, unexplained: 0, clamped: 0,
+      samples: this.bench.totalSamples, readings: 0, judged: 0, unusable: 0, unexplained: 0, hiddenClipping: 0, clamped: 0,
       clipped: { sensor: 0, amplifier: 0, converter: 0 }, largest: new Float64Array(this.chain.stages.length),
       zeroRemoved: null, statusSeen: 0,
     };
@@ -158,6 +169,7 @@ class Player {
   private powerCycle(): void {
     this.chain.powerCycle();
     this.poweredAt = this.done;
+    this.influence.forget();
     for (const reader of this.meterReaders) reader.restart();
   }
 
@@ -170,9 +182,20 @@ class Player {
       if (clipped & CLIP_SENSOR) played.clipped.sensor++;
       if (clipped & CLIP_AMPLIFIER) played.clipped.amplifier++;
       if (clipped & CLIP_CONVERTER) played.clipped.converter++;
-      if (clipped !== 0 || Math.abs(amperes) > probe.range_A) this.lastCause = this.done + i;
+      if (clipped !== 0 || Math.abs(amperes) + this.coilAmperes(this.done + i) > probe.range_A) this.lastCause = this.done + i;
       this.causes[i] = this.lastCause;
+      this.influenced[i] = this.influence.hear(this.done + i, codes.influenced[i] !== 0) ? 1 : 0;
     }
+  }
+
+  /** Amplitude of the coil's current, as the conductor's current that would magnetise the core as much. */
+  private coilAmperes(sample: number): number {
+    const { coil } = this.scenario;
+    if (coil === null) return 0;
+    const milliseconds = this.bench.instantSeconds(sample) * 1e3 - coil.at_ms;
+    if (milliseconds < 0) return 0;
+    const { coilTurns, turns } = this.probe.core;
+    return (coil.peak_A * Math.exp(-milliseconds / coil.decay_ms) * coilTurns) / turns;
   }
 
   private throughChain(): void {
@@ -215,6 +238,7 @@ class Player {
       out.seconds[i] = bench.instantSeconds(input);
       out.amperes[i] = block.value[i] / tuned.readingsPerAmpere;
       out.truth[i] = truth.at(position);
+      out.now[i] = truth.at(input);
       out.slope[i] = (out.truth[i] - truth.at(position - 1)) / secondsPerSample;
       out.status[i] = status;
       played.statusSeen |= status;
@@ -223,6 +247,7 @@ class Player {
       if (out.judged[i] === 0) continue;
       played.judged++;
       if (status & UNUSABLE) played.unusable++;
+      else if (this.influenced[input - this.done] === 1) played.hiddenClipping++;
       const flags = status & (OVERLOAD | CLAMPED | STUCK);
       if (flags !== 0 && input - this.causes[input - this.done] > this.memorySamples) played.unexplained++;
     }
@@ -238,6 +263,17 @@ class Player {
       }
     }
   }
+}
+
+/** Input samples in one block: no more than make as many records as the ring of the smallest meter holds. */
+function samplesAtOnce(tuned: Tuned): number {
+  const most = tuned.constants.design.map((stage, index) => {
+    if (stage.kind !== 'meter') return BLOCK;
+    // a cycle takes two samples at least: one below the mean and one above
+    const shortest = stage.cycles > 0 ? 2 * stage.cycles : stage.windowSamples;
+    return stage.capacity * shortest * tuned.ratios[index];
+  });
+  return Math.min(BLOCK, ...most);
 }
 
 /** Reads the records of one meter as they come, and finds the input samples that each is about. */

@@ -1,21 +1,24 @@
 /**
- * Proves a probe: plays every scenario that a requirement names, and gives one row a requirement as soon as it is
- * known, then what the run as a whole has shown. Nothing here prints.
+ * Proves a probe: plays every scenario that a requirement names, once for all of them, then the scenarios that other
+ * requirements make for themselves, and gives one row a requirement as soon as it is known, then what the run as a
+ * whole has shown. Nothing here prints.
  */
+import { TRACKING } from '../../lib/index.ts';
 import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import type { Preset } from '../probe/validate.ts';
 import { gridFactorOf } from '../hardware/grid.ts';
 import { countTolerances } from '../hardware/draw.ts';
 import { calibrate } from '../tuning/calibrate.ts';
 import { tune, type Tuned } from '../tuning/tune.ts';
-import { measureFor, type Measure } from './measures.ts';
+import { NoiseOfReading, limitOf, shareOf, type Better } from './measures.ts';
 import { weighPresets, type WeighedPreset } from './presets.ts';
 import { play, type Observer, type Played } from './play.ts';
 import { settlingOf, type ChainSettling } from './settle.ts';
+import { studyFor, type Study } from './study.ts';
 import { swallowedAutomatically, swallowedOf, type Swallowed } from './swallowed.ts';
 
 export interface Row {
-  /** Stable: measure, scenario, and the meter where there is one. */
+  /** Stable: measure, meter where there is one, and scenario, or what is asked of a made one; #2 for a second like it. */
   id: string;
   measure: string;
   scenario: string;
@@ -24,6 +27,8 @@ export interface Row {
   /** null: it could not be measured; `because` says why. */
   value: number | null;
   limit: number;
+  /** 'more': the limit is a least value. */
+  better: Better;
   unit: string;
   share: number | null;
   holds: boolean;
@@ -57,6 +62,8 @@ export interface Verdict {
   /** Hardware fields that have a tolerance. */
   tolerances: number;
   rows: Row[];
+  /** Requirements left out because their scenarios are long. */
+  leftOut: number;
   holds: boolean;
   summary: Summary;
 }
@@ -69,6 +76,8 @@ export interface ProveOptions {
   file?: string;
   /** Only requirements of this scenario. */
   only?: string;
+  /** Also scenarios marked long. */
+  all?: boolean;
   presets?: Preset[];
   progress?: (scenario: string, share: number) => void;
   /** Makes one more observer for each scenario that is played. */
@@ -77,76 +86,165 @@ export interface ProveOptions {
 
 /** Yields rows as they are known and returns the verdict. */
 export function* prove(probe: Probe, options: ProveOptions): Generator<Row, Verdict> {
-  const { seed, trial, folder } = options;
-  const tuned = tune(probe, calibrate(probe, { seed, trial, folder }), options.file ?? null);
+  const { seed, trial } = options;
+  const tuned = tune(probe, calibrate(probe, { seed, trial, folder: options.folder }), options.file ?? null);
   const gathering = new Gathering(probe, tuned);
+  const player = new ScenarioPlayer(probe, tuned, options, gathering);
   const rows: Row[] = [];
-  for (const requirement of probe.requirements) {
-    if (requirement.measure !== 'swallowed' || options.only !== undefined) continue;
-    rows.push(swallowedRow(tuned, requirement.limit_A, trial));
+  const names = new RowNames();
+  for (const row of rowsOf(probe, tuned, options, player)) {
+    rows.push({ ...row, id: names.fresh(row.id) });
     yield rows[rows.length - 1];
   }
-  for (const scenario of probe.scenarios) {
-    if (options.only !== undefined && scenario.name !== options.only) continue;
-    const requirements = probe.requirements.filter((requirement) => requirement.measure !== 'swallowed' && requirement.scenario === scenario.name);
-    if (requirements.length === 0 && options.only === undefined) continue;
-    const measures = requirements.map((requirement) => measureFor(requirement, scenario, probe.range_A));
-    const noise = gathering.noiseMeasureFor(scenario);
-    const observers: Observer[] = noise === null ? [...measures] : [...measures, noise];
-    if (options.observer !== undefined) observers.push(options.observer(scenario.name));
-    const played = play(probe, scenario, tuned, {
-      seed, trial, folder, progress: (share) => options.progress?.(scenario.name, share),
-    }, observers);
-    gathering.hear(scenario, played);
-    for (let i = 0; i < measures.length; i++) {
-      rows.push(rowOf(requirements[i], scenario, measures[i], played, trial));
-      yield rows[rows.length - 1];
-    }
+  for (const row of [gathering.hiddenRow(trial), gathering.unexplainedRow(trial)]) {
+    rows.push(row);
+    yield row;
   }
-  rows.push(gathering.unexplainedRow(trial));
-  yield rows[rows.length - 1];
   return {
-    probe: probe.name, seed, trial, tolerances: countTolerances(probe), rows, holds: rows.every((row) => row.holds),
+    probe: probe.name, seed, trial, tolerances: countTolerances(probe), rows, leftOut: leftOutOf(probe, options),
+    holds: rows.every((row) => row.holds),
     summary: gathering.summary(options.presets ?? []),
   };
 }
 
-function rowOf(requirement: Requirement, scenario: Scenario, measure: Measure, played: Played, trial: number): Row {
-  const result = measure.result();
+function leftOutOf(probe: Probe, { only, all }: ProveOptions): number {
+  if (all || only !== undefined) return 0;
+  const long = new Set(probe.scenarios.filter((scenario) => scenario.long).map((scenario) => scenario.name));
+  return probe.requirements.filter((requirement) => 'scenario' in requirement && long.has(requirement.scenario)).length;
+}
+
+function* rowsOf(probe: Probe, tuned: Tuned, options: ProveOptions, player: ScenarioPlayer): Generator<Row> {
+  const { trial, only, folder } = options;
+  for (const requirement of probe.requirements) {
+    if (requirement.measure === 'swallowed' && only === undefined) yield swallowedRow(tuned, requirement.limit_A, trial);
+  }
+  for (const scenario of probe.scenarios) {
+    if (only === undefined ? scenario.long && !options.all : scenario.name !== only) continue;
+    const requirements = probe.requirements.filter((requirement) => 'scenario' in requirement && requirement.scenario === scenario.name);
+    if (requirements.length === 0 && only === undefined) continue;
+    const studies = requirements.map((requirement) => studyFor(requirement, probe, folder));
+    const observers = studies.flatMap((study) => [...study.plays].map((entry) => entry.observer));
+    const played = player.play(scenario, observers);
+    for (let i = 0; i < studies.length; i++) yield rowOf(requirements[i], studies[i], eventsOf([played], supplyWords(probe, scenario)), trial);
+  }
+  if (only !== undefined) return;
+  for (const requirement of probe.requirements) {
+    if ('scenario' in requirement || requirement.measure === 'swallowed') continue;
+    const study = studyFor(requirement, probe, folder);
+    const played: Played[] = [];
+    for (const entry of study.plays) played.push(player.play(entry.scenario, [entry.observer]));
+    yield rowOf(requirement, study, eventsOf(played), trial);
+  }
+}
+
+class ScenarioPlayer {
+  constructor(
+    private readonly probe: Probe, private readonly tuned: Tuned, private readonly options: ProveOptions, private readonly gathering: Gathering,
+  ) {}
+
+  play(scenario: Scenario, observers: readonly Observer[]): Played {
+    const { options, gathering } = this;
+    const { seed, trial, folder } = options;
+    const all = [...observers];
+    const named = this.probe.scenarios.includes(scenario);
+    const noise = named ? gathering.noiseMeasureFor(scenario) : null;
+    if (noise !== null) all.push(noise);
+    if (named && options.observer !== undefined) all.push(options.observer(scenario.name));
+    const played = play(this.probe, scenario, this.tuned, {
+      seed, trial, folder, progress: (share) => options.progress?.(scenario.name, share),
+    }, all);
+    gathering.hear(scenario, played);
+    return played;
+  }
+}
+
+/** Two requirements that ask the same of the same scenario get rows of their own. */
+class RowNames {
+  private readonly given = new Map<string, number>();
+
+  fresh(id: string): string {
+    const count = (this.given.get(id) ?? 0) + 1;
+    this.given.set(id, count);
+    return count === 1 ? id : `${id}#${count}`;
+  }
+}
+
+function rowOf(requirement: Requirement, study: Study, happened: Happened, trial: number): Row {
+  const result = study.result();
   const meter = 'meter' in requirement && requirement.meter !== 'meter' ? `/${requirement.meter}` : '';
-  const base = { id: `${requirement.measure}${meter}@${scenario.name}`, measure: requirement.measure, scenario: scenario.name, trial };
+  const scenario = 'scenario' in requirement ? requirement.scenario : askedOf(requirement);
+  const base = { id: `${requirement.measure}${meter}@${scenario}`, measure: requirement.measure, scenario, trial };
   if (typeof result === 'string') {
-    return {
-      ...base, where: '', value: null, limit: limitOf(requirement), unit: requirement.measure === 'settling' ? 'ms' : 'A',
-      share: null, holds: false, because: `${result}${eventsOf(played)}`,
-    };
+    return { ...base, ...limitOf(requirement), where: '', value: null, share: null, holds: false, because: reason(result, happened) };
   }
   const holds = result.share <= 1;
   const { value, limit, unit, share, where } = result;
-  return { ...base, where, value, limit, unit, share, holds, because: holds ? null : becauseOf(result.shape, played) };
+  return {
+    ...base, where, value, limit, better: result.better ?? 'less', unit, share: finiteOrNull(share), holds,
+    because: holds ? null : reason(result.shape, happened),
+  };
 }
 
-function limitOf(requirement: Requirement): number {
-  if (requirement.measure === 'settling') return requirement.limit_ms;
-  if (requirement.measure === 'noise' || requirement.measure === 'swallowed') return requirement.limit_A;
-  return requirement.amperes;
+/** Something of an allowance of nothing is no share that could be written down. */
+function finiteOrNull(share: number): number | null {
+  return Number.isFinite(share) ? share : null;
 }
 
-/** Clipping explains more than any fit can, and a zero that moved is told beside the fit. */
-function becauseOf(shape: string, played: Played): string {
-  return `${shape}${eventsOf(played)}`;
-}
-
-function eventsOf(played: Played): string {
-  const { clipped, samples, zeroRemoved } = played;
-  const nodes: string[] = [];
-  if (clipped.sensor > 0) nodes.push(`the sensor reached its swing limit in ${percent(clipped.sensor, samples)} of the samples`);
-  if (clipped.amplifier > 0) nodes.push(`the amplifier reached its rail in ${percent(clipped.amplifier, samples)}`);
-  if (clipped.converter > 0) nodes.push(`the converter reached its end codes in ${percent(clipped.converter, samples)}`);
-  if (zeroRemoved !== null && zeroRemoved.highest > zeroRemoved.lowest) {
-    nodes.push(`the zero moved from ${zeroRemoved.lowest.toPrecision(4)} A to ${zeroRemoved.highest.toPrecision(4)} A during the scenario`);
+/** What a requirement without a scenario of its own asks for, in place of the scenario's name. */
+function askedOf(requirement: Exclude<Requirement, { scenario: string }>): string {
+  switch (requirement.measure) {
+    case 'band': {
+      const { from_Hz, to_Hz, peak_A, lowest_C, highest_C } = requirement;
+      return `${peak_A} A, ${rangeText(from_Hz, to_Hz)} Hz, ${rangeText(lowest_C, highest_C)} °C`;
+    }
+    case 'bandwidth': return `${requirement.peak_A} A`;
+    case 'zeroOverTemperature': return `${rangeText(requirement.lowest_C, requirement.highest_C)} °C`;
+    case 'swallowed': return '';
   }
-  return nodes.length === 0 ? '' : `; ${nodes.join('; ')}`;
+}
+
+function rangeText(low: number, high: number): string {
+  return low === high ? `${low}` : `${low} to ${high}`;
+}
+
+interface Happened {
+  words: string;
+  clipped: boolean;
+}
+
+/** What a node or the zero did; clipping explains more than any fit can, so it comes first in a reason. */
+function eventsOf(plays: readonly Played[], supply = ''): Happened {
+  const sum = (of: (played: Played) => number): number => plays.reduce((total, played) => total + of(played), 0);
+  const samples = sum((played) => played.samples);
+  const sensor = sum((played) => played.clipped.sensor);
+  const amplifier = sum((played) => played.clipped.amplifier);
+  const converter = sum((played) => played.clipped.converter);
+  const nodes: string[] = [];
+  if (sensor > 0) nodes.push(`the sensor reached its swing limit in ${percent(sensor, samples)} of the samples`);
+  if (amplifier > 0) nodes.push(`the amplifier reached its rail in ${percent(amplifier, samples)} of the samples`);
+  if (converter > 0) nodes.push(`the converter reached its end codes in ${percent(converter, samples)} of the samples`);
+  // the zeros of several scenarios differ without one having moved
+  const zeroRemoved = plays.length === 1 ? plays[0].zeroRemoved : null;
+  if (zeroRemoved !== null && zeroRemoved.highest > zeroRemoved.lowest) {
+    const who = plays[0].statusSeen & TRACKING ? 'tracking moved the zero' : 'the zero moved';
+    nodes.push(`${who} from ${zeroRemoved.lowest.toPrecision(4)} A to ${zeroRemoved.highest.toPrecision(4)} A during the scenario`);
+  }
+  if (supply !== '') nodes.push(supply);
+  return { words: nodes.join('; '), clipped: sensor + amplifier + converter > 0 };
+}
+
+/** A supply off its nominal value moves the reading when only one of sensor and reference follows it. */
+function supplyWords(probe: Probe, scenario: Scenario): string {
+  const nominal = probe.supply_V.nominal;
+  const supply = scenario.supply_V ?? nominal;
+  const follows = probe.sensor.ratiometric;
+  if (supply === nominal || follows === (probe.converter.reference === 'supply')) return '';
+  return `the supply is ${supply} V in place of ${nominal} V and ${follows ? 'the sensor follows it, the reference does not' : 'the reference follows it, the sensor does not'}`;
+}
+
+function reason(shape: string, { words, clipped }: Happened): string {
+  if (words === '') return shape;
+  return clipped ? `${words}; ${shape}` : `${shape}; ${words}`;
 }
 
 function percent(part: number, whole: number): string {
@@ -159,13 +257,10 @@ function swallowedRow(tuned: Tuned, limitAmperes: number, trial: number): Row {
   const holds = value <= limitAmperes;
   const parts = list.filter((entry) => entry.by !== 'button').map((entry) => `${entry.by} ${entry.amperes.toPrecision(3)} A`);
   return {
-    id: 'swallowed', measure: 'swallowed', scenario: '', trial, where: 'from the constants', value, limit: limitAmperes, unit: 'A',
-    share: shareOf(value, limitAmperes), holds, because: holds ? null : `automatic zeroing may remove ${parts.join(' and ')}: narrow its windows`,
+    id: 'swallowed', measure: 'swallowed', scenario: '', trial, where: 'from the constants', value, limit: limitAmperes,
+    better: 'less', unit: 'A', share: finiteOrNull(shareOf(value, limitAmperes)), holds,
+    because: holds ? null : `automatic zeroing may remove ${parts.join(' and ')}: narrow its windows`,
   };
-}
-
-function shareOf(value: number, limit: number): number {
-  return value === 0 ? 0 : value / limit;
 }
 
 /** What the scenarios show together. */
@@ -173,20 +268,20 @@ class Gathering {
   private readonly largest: Float64Array;
   private clampedReadings = 0;
   private readings = 0;
-  private unexplained = 0;
   private judged = 0;
-  private worstUnexplained = { scenario: '', count: 0 };
+  private readonly unexplained = new Tally();
+  private readonly hidden = new Tally();
   private zeroRemoved: { lowest: number; highest: number } | null = null;
-  private noise: { scenario: string; measure: Measure } | null = null;
+  private noise: { scenario: string; measure: NoiseOfReading } | null = null;
 
   constructor(private readonly probe: Probe, private readonly tuned: Tuned) {
     this.largest = new Float64Array(tuned.constants.design.length);
   }
 
   /** The first steady scenario also tells the noise of the reading. */
-  noiseMeasureFor(scenario: Scenario): Measure | null {
+  noiseMeasureFor(scenario: Scenario): NoiseOfReading | null {
     if (this.noise !== null || scenario.current.shape !== 'dc') return null;
-    const measure = measureFor({ measure: 'noise', scenario: scenario.name, limit_A: 1 }, scenario, this.probe.range_A);
+    const measure = new NoiseOfReading(1);
     this.noise = { scenario: scenario.name, measure };
     return measure;
   }
@@ -198,10 +293,8 @@ class Gathering {
     this.clampedReadings += played.clamped;
     this.readings += played.readings;
     this.judged += played.judged;
-    this.unexplained += played.unexplained;
-    if (played.unexplained > this.worstUnexplained.count) {
-      this.worstUnexplained = { scenario: scenario.name, count: played.unexplained };
-    }
+    this.unexplained.hear(scenario, played.unexplained);
+    this.hidden.hear(scenario, played.hiddenClipping);
     const removed = played.zeroRemoved;
     if (removed === null) return;
     this.zeroRemoved ??= { ...removed };
@@ -210,12 +303,21 @@ class Gathering {
   }
 
   unexplainedRow(trial: number): Row {
-    const holds = this.unexplained === 0;
+    return this.tallyRow('unexplainedFlags', this.unexplained, trial, 'are flagged although no node clipped and the current ' +
+      'stayed within the range: a limit of overRange is too tight');
+  }
+
+  hiddenRow(trial: number): Row {
+    return this.tallyRow('hiddenClipping', this.hidden, trial, 'are influenced by clipping and their status is clean: a rail that no ' +
+      'code shows (set highCode, lowCode or limit_A of overRange inside it), or a filter ahead of the converter that hides it');
+  }
+
+  private tallyRow(measure: string, tally: Tally, trial: number, reason: string): Row {
+    const { total, worst } = tally;
+    const holds = total === 0;
     return {
-      id: 'unexplainedFlags', measure: 'unexplainedFlags', scenario: this.worstUnexplained.scenario, trial,
-      where: `${this.judged} readings judged`, value: this.unexplained, limit: 0, unit: 'readings', share: holds ? 0 : null, holds,
-      because: holds ? null : `${this.worstUnexplained.count} readings of "${this.worstUnexplained.scenario}" are flagged although no node ` +
-        'clipped and the current stayed within the range: a limit of overRange is too tight',
+      id: measure, measure, scenario: worst.scenario, trial, where: `${this.judged} readings judged`, value: total, limit: 0, better: 'less',
+      unit: 'readings', share: holds ? 0 : null, holds, because: holds ? null : `${worst.count} readings of "${worst.scenario}" ${reason}`,
     };
   }
 
@@ -231,6 +333,17 @@ class Gathering {
       swallowed: swallowedOf(tuned.constants.design, tuned.countsPerAmpere), settling: settlingOf(probe, tuned),
       delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe), presets: weighPresets(probe, presets),
     };
+  }
+}
+
+/** A count over all scenarios, and the scenario with most of it. */
+class Tally {
+  total = 0;
+  worst = { scenario: '', count: 0 };
+
+  hear(scenario: Scenario, count: number): void {
+    this.total += count;
+    if (count > this.worst.count) this.worst = { scenario: scenario.name, count };
   }
 }
 

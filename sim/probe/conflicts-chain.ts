@@ -51,7 +51,7 @@ function stageConflicts(stage: StageSpec, path: string, probe: Probe, ahead: Sta
 }
 
 /** The rate that samples have in front of a stage; other stages than decimate could only lower it further. */
-function rateAhead(probe: Probe, ahead: StageSpec[]): Quantity {
+export function rateAhead(probe: Probe, ahead: StageSpec[]): Quantity {
   let value = probe.converter.rate_kHz;
   let path = 'converter.rate_kHz';
   for (const stage of ahead) {

@@ -1,10 +1,12 @@
 /**
- * Requirements against the scenarios and meters they name, and against what can be judged there at all: an
- * allowance of zero, noise of a current that moves, settling without a step, a window longer than the scenario.
+ * Requirements in themselves and against the scenarios and meters they name: an allowance of zero, limits in the wrong
+ * order, frequencies that the sample rate cannot show, a window longer than the scenario. What a measure needs of the
+ * current it is judged at: conflicts-measures.ts.
  */
 import { oneOf } from './allowed.ts';
-import { metersOf, meterNames } from './conflicts-chain.ts';
-import type { Note } from './conflict.ts';
+import { mustNotExceed, type Note } from './conflict.ts';
+import { metersOf, meterNames, rateAhead } from './conflicts-chain.ts';
+import { measureConflicts } from './conflicts-measures.ts';
 import type { Probe, Requirement, Scenario, StageSpecOf } from './fields.ts';
 import { nearest } from './nearest.ts';
 import { pathTo } from './problem.ts';
@@ -16,13 +18,18 @@ export function requirementConflicts(probe: Probe, note: Note): void {
   probe.requirements.forEach((requirement, index) => {
     const path = pathTo('requirements', index);
     if ('percentOfReading' in requirement) allowanceConflict(requirement, path, note);
+    if ('lowest_C' in requirement) {
+      mustNotExceed(note, { path: pathTo(path, 'lowest_C'), value: requirement.lowest_C, unit: '°C' },
+        { path: pathTo(path, 'highest_C'), value: requirement.highest_C, unit: '°C' });
+    }
+    if (requirement.measure === 'band') bandConflicts(requirement, path, probe, note);
+    if (requirement.measure === 'bandwidth') bandwidthConflict(requirement, path, probe, note);
     const scenario = 'scenario' in requirement ? scenarioOf(requirement.scenario, path, probe, note) : null;
     const meter = 'meter' in requirement ? meterOf(requirement, path, probe, note) : null;
-    if (scenario === null) return;
+    if (scenario === null || !('scenario' in requirement)) return;
     if ('percentOfReading' in requirement) zeroTruthConflict(requirement, scenario, path, note);
     if (meter !== null) windowConflict(meter, scenario, path, note);
-    if (requirement.measure === 'noise') noiseConflict(scenario, path, note);
-    if (requirement.measure === 'settling') settlingConflicts(requirement, scenario, path, note);
+    measureConflicts(requirement, scenario, path, probe, note);
   });
 }
 
@@ -86,31 +93,28 @@ function windowConflict(meter: StageSpecOf<'meter'>, scenario: Scenario, path: s
   }
 }
 
-function noiseConflict(scenario: Scenario, path: string, note: Note): void {
-  const { shape } = scenario.current;
-  if (shape === 'dc' || (shape as string) === '') return;
-  note(pathTo(path, 'scenario'), `${JSON.stringify(scenario.name)} (shape ${JSON.stringify(shape)})`,
-    'a scenario with a current of shape "dc"', 'the spread of a reading that moves is not noise');
+/** A window of a meter is judged against the true current over the same samples, so the A/D rate is what counts. */
+function bandConflicts(
+  { from_Hz, to_Hz, points }: Extract<Requirement, { measure: 'band' }>, path: string, probe: Probe, note: Note,
+): void {
+  const from = { path: pathTo(path, 'from_Hz'), value: from_Hz, unit: 'Hz' };
+  mustNotExceed(note, from, { path: pathTo(path, 'to_Hz'), value: to_Hz, unit: 'Hz' });
+  if (points === 1 && from_Hz < to_Hz) {
+    note(pathTo(path, 'points'), '1', `2 or more, as ${from.path} (${from_Hz} Hz) is below to_Hz (${to_Hz} Hz)`,
+      'a band has two ends');
+  }
+  const half_Hz = probe.converter.rate_kHz * 500;
+  if (to_Hz >= half_Hz) {
+    note(pathTo(path, 'to_Hz'), `${to_Hz} Hz`, `below ${half_Hz} Hz, half of converter.rate_kHz`);
+  }
 }
 
-function settlingConflicts(
-  requirement: Extract<Requirement, { measure: 'settling' }>, scenario: Scenario, path: string, note: Note,
+function bandwidthConflict(
+  { atLeast_Hz }: Extract<Requirement, { measure: 'bandwidth' }>, path: string, probe: Probe, note: Note,
 ): void {
-  const { current, name, duration_ms } = scenario;
-  if ((current.shape as string) === '') return;
-  if (current.shape !== 'step') {
-    note(pathTo(path, 'scenario'), `${JSON.stringify(name)} (shape ${JSON.stringify(current.shape)})`,
-      'a scenario with a current of shape "step"');
-    return;
-  }
-  if (current.from_A === current.to_A) {
-    note(pathTo(path, 'scenario'), `${JSON.stringify(name)} (from_A and to_A both ${current.to_A} A)`,
-      'a step between two different currents');
-  }
-  const left_ms = duration_ms - current.at_ms - current.edge_us / 2000;
-  if (current.at_ms < duration_ms && requirement.limit_ms > left_ms) {
-    note(pathTo(path, 'limit_ms'), `${requirement.limit_ms} ms`,
-      `a time that duration_ms (${duration_ms} ms) of ${JSON.stringify(name)} leaves after the middle of its step ` +
-      '(at_ms, edge_us)');
+  const rate = rateAhead(probe, probe.chain);
+  if (atLeast_Hz >= rate.value * 500) {
+    note(pathTo(path, 'atLeast_Hz'), `${atLeast_Hz} Hz`, `below ${rate.value * 500} Hz, half the rate of readings ` +
+      `(${rate.path})`, 'readings cannot show a faster sine');
   }
 }

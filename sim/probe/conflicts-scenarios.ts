@@ -1,25 +1,29 @@
 /**
- * Scenarios in themselves: names apart, everything inside the duration, and currents that do what their fields say.
+ * Scenarios in themselves: names apart, everything inside the duration, surroundings that can be.
  * A current above half the sample rate, or beyond the range, is a legal thing to prove a probe against.
  */
-import { mustBeBelow, mustDiffer, type Note, type Quantity } from './conflict.ts';
-import type { CurrentSpec, Probe, Scenario } from './fields.ts';
+import { mustAscend, mustBeBelow, mustDiffer, type Note, type Quantity } from './conflict.ts';
+import { currentConflicts } from './conflicts-currents.ts';
+import type { Probe, Scenario } from './fields.ts';
 import { pathTo } from './problem.ts';
 
-/** Relative room for rounding where a length is compared with one computed from a frequency. */
-const ROUNDING = 1 + 1e-9;
+type Event = Scenario['events'][number];
+
+/** What is one thing or the other at any time; the rest are signals that may come as they like. */
+const STATES: readonly Event['event'][] = ['jaw opened', 'polarity'];
 
 export function scenarioConflicts(probe: Probe, note: Note): void {
   const paths = probe.scenarios.map((_, index) => pathTo('scenarios', index));
   mustDiffer(note, probe.scenarios.map(({ name }, index) => ({ path: pathTo(paths[index], 'name'), name })));
   probe.scenarios.forEach((scenario, index) => {
-    const duration = milliseconds(pathTo(paths[index], 'duration_ms'), scenario.duration_ms);
-    mustBeBelow(note, milliseconds(pathTo(paths[index], 'judgeFrom_ms'), scenario.judgeFrom_ms), duration);
-    scenario.events.forEach((event, place) => {
-      const path = pathTo(pathTo(pathTo(paths[index], 'events'), place), 'at_ms');
-      mustBeBelow(note, milliseconds(path, event.at_ms), duration);
-    });
-    currentConflicts(scenario, pathTo(paths[index], 'current'), duration, note);
+    const path = paths[index];
+    const duration = milliseconds(pathTo(path, 'duration_ms'), scenario.duration_ms);
+    mustBeBelow(note, milliseconds(pathTo(path, 'judgeFrom_ms'), scenario.judgeFrom_ms), duration);
+    eventConflicts(scenario.events, pathTo(path, 'events'), duration, note);
+    mustAscend(note, pathTo(path, 'ambient'), 'at_ms', 'ms', scenario.ambient.map((point) => point.at_ms));
+    supplyConflict(scenario, path, probe, note);
+    coilConflicts(scenario, path, probe, duration, note);
+    currentConflicts(scenario.current, pathTo(path, 'current'), duration, note);
   });
 }
 
@@ -27,44 +31,47 @@ function milliseconds(path: string, value: number): Quantity {
   return { path, value, unit: 'ms' };
 }
 
-function currentConflicts(scenario: Scenario, path: string, duration: Quantity, note: Note): void {
-  const current = scenario.current;
-  switch (current.shape) {
-    case 'sine':
-      if (current.peak_A === 0) note(pathTo(path, 'peak_A'), '0 A', 'an amplitude that is not 0', 'or shape "dc"');
-      return;
-    case 'pwm': return pwmConflicts(current, path, note);
-    case 'step': return mustBeBelow(note, milliseconds(pathTo(path, 'at_ms'), current.at_ms), duration);
-    case 'staircase': return staircaseConflicts(current, path, duration, note);
+function eventConflicts(events: readonly Event[], path: string, duration: Quantity, note: Note): void {
+  events.forEach((event, place) => {
+    const own = pathTo(path, place);
+    mustBeBelow(note, milliseconds(pathTo(own, 'at_ms'), event.at_ms), duration);
+    if (!STATES.includes(event.event)) return;
+    if (event.at_ms < duration.value && event.at_ms + event.for_ms > duration.value) {
+      note(pathTo(own, 'for_ms'), `${event.for_ms} ms`,
+        `at most ${duration.value - event.at_ms} ms, which at_ms leaves of ${duration.path} (${duration.value} ms)`);
+    }
+  });
+  for (const state of STATES) overlapConflicts(state, events, path, note);
+}
+
+/** In order of time, each must be over when the next one begins. */
+function overlapConflicts(state: Event['event'], events: readonly Event[], path: string, note: Note): void {
+  const alike = events.map((event, place) => ({ ...event, own: pathTo(path, place) }))
+    .filter(({ event, at_ms, for_ms }) => event === state && at_ms + for_ms >= 0)
+    .sort((one, other) => one.at_ms - other.at_ms);
+  for (let i = 1; i < alike.length; i++) {
+    const before = alike[i - 1];
+    const end_ms = before.at_ms + before.for_ms;
+    if (alike[i].at_ms >= end_ms) continue;
+    note(pathTo(alike[i].own, 'at_ms'), `${alike[i].at_ms} ms`, `${end_ms} ms or later, when the event ` +
+      `${JSON.stringify(state)} of ${before.own} is over (its at_ms and for_ms)`);
   }
 }
 
-function pwmConflicts(current: Extract<CurrentSpec, { shape: 'pwm' }>, path: string, note: Note): void {
-  const { low_A, high_A, frequency_Hz, duty_percent, edge_us } = current;
-  if (low_A === high_A) {
-    note(pathTo(path, 'high_A'), `${high_A} A`, `another current than ${pathTo(path, 'low_A')} (${low_A} A)`);
-  }
-  if (duty_percent === 0 || duty_percent === 100) return;
-  const shorter_us = (1e6 / frequency_Hz) * (Math.min(duty_percent, 100 - duty_percent) / 100);
-  if (edge_us > shorter_us * ROUNDING) {
-    note(pathTo(path, 'edge_us'), `${edge_us} µs`,
-      `at most the shorter of on and off time (${shorter_us} µs), which frequency_Hz and duty_percent give`,
-      'a longer edge never reaches its level');
-  }
+function supplyConflict(scenario: Scenario, path: string, probe: Probe, note: Note): void {
+  const start_V = scenario.supply_V ?? probe.supply_V.nominal;
+  const fall_V = (scenario.supplySag_mV_per_s / 1e3) * (scenario.duration_ms / 1e3);
+  if (fall_V < start_V || Number.isNaN(fall_V) || Number.isNaN(start_V)) return;
+  note(pathTo(path, 'supplySag_mV_per_s'), `${scenario.supplySag_mV_per_s} mV/s`,
+    `a fall that leaves some of the supply_V of ${start_V} V over duration_ms (${scenario.duration_ms} ms)`);
 }
 
-function staircaseConflicts(
-  current: Extract<CurrentSpec, { shape: 'staircase' }>, path: string, duration: Quantity, note: Note,
-): void {
-  const { levels_A, hold_ms, edge_us } = current;
-  if (edge_us > hold_ms * 1000 * ROUNDING) {
-    note(pathTo(path, 'edge_us'), `${edge_us} µs`, `at most ${pathTo(path, 'hold_ms')} (${hold_ms} ms)`,
-      'a longer edge never reaches its level');
-  }
-  if (levels_A.some(Number.isNaN)) return;
-  const lastFrom_ms = (levels_A.length - 1) * hold_ms;
-  if (lastFrom_ms >= duration.value) {
-    note(duration.path, `${duration.value} ms`, `above ${lastFrom_ms} ms, when the last of the ${levels_A.length} ` +
-      `levels_A begins with this hold_ms`, 'a level that never comes proves nothing');
+function coilConflicts(scenario: Scenario, path: string, probe: Probe, duration: Quantity, note: Note): void {
+  if (scenario.coil === null) return;
+  const coil = pathTo(path, 'coil');
+  mustBeBelow(note, milliseconds(pathTo(coil, 'at_ms'), scenario.coil.at_ms), duration);
+  // of a scenario that could not be read nobody knows whether it has a coil
+  if (probe.core.coilTurns === 0 && !Number.isNaN(scenario.coil.at_ms)) {
+    note(coil, 'a current in the coil', 'no such current, as the core has no coil (core.coilTurns is 0)');
   }
 }

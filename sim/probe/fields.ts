@@ -6,11 +6,35 @@ import { choice, code, flag, group, list, number, text, variant, type Of } from 
 
 const MAX_TIME_MS = 3_600_000;
 
-const core = group('gapped magnetic core around the conductor (linear)', {
+const play = group('magnetic memory of the core: play operators in H behind one another and a saturating curve', {
+  coercivity_A_per_m: number('coercivity of the material without gap, from saturation', { unit: 'A/m', min: 0, aboveMin: true, max: 10000, toleranced: true, preset: null }),
+  remanence_T: number('remanence of the material without gap, from saturation', { unit: 'T', min: 0, aboveMin: true, max: 3, toleranced: true, preset: null }),
+  saturation_T: number('flux density that the material cannot exceed', { unit: 'T', min: 0.01, max: 3, toleranced: true, preset: null }),
+  loopFile: text('CSV file of a measured loop (A/m, T), beside the probe file, to which the model is fitted instead', ''),
+}, 'absent');
+
+const jilesAtherton = group('magnetic memory of the core: Jiles-Atherton, M = c Man + (1 - c) Mirr, dMirr/dH', {
+  saturation_kA_per_m: number('saturation magnetisation Ms', { unit: 'kA/m', min: 0, aboveMin: true, max: 3000, toleranced: true }),
+  shape_A_per_m: number('shape of the anhysteretic curve, a', { unit: 'A/m', min: 0, aboveMin: true, max: 100000, toleranced: true }),
+  coupling: number('coupling between domains, alpha', { unit: '', min: 0, max: 0.1, toleranced: true }),
+  pinning_A_per_m: number('pinning, k', { unit: 'A/m', min: 0, aboveMin: true, max: 100000, toleranced: true }),
+  reversibility: number('reversible share, c', { unit: '', min: 0, max: 0.999, toleranced: true }),
+}, 'absent');
+
+const core = group('gapped magnetic core around the conductor', {
   gap_mm: number('length of the air gap that holds the sensor', { unit: 'mm', min: 0, aboveMin: true, max: 100, toleranced: true }),
   path_mm: number('length of the magnetic path inside the core', { unit: 'mm', min: 0, aboveMin: true, max: 2000, toleranced: true }),
   permeability: number('relative permeability of the core material', { unit: '', min: 1, max: 1e6, toleranced: true }),
   turns: number('how often the conductor passes through the core', { unit: '', min: 1, max: 1000, integer: true, preset: 1 }),
+  play,
+  jilesAtherton,
+  eddy_kHz: number('corner of the lag by eddy currents (one pole); left out: no lag', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true, preset: null }),
+  position_percent: number('change of sensitivity by where the conductor lies in the window', { unit: '%', min: -20, max: 20, toleranced: true, preset: 0 }),
+  jointGap_um: number('gap at the joint of the jaw, beyond gap_mm; drawn anew within its tolerance at each closing', { unit: 'µm', min: 0, max: 10000, toleranced: true, preset: 0 }),
+  openJaw_percent: number('sensitivity that is left while the jaw is open', { unit: '%', min: 0, max: 100, toleranced: true, preset: 2 }),
+  concentration: number('field in the gap for each tesla of an outer field along the sensitive axis', { unit: '', min: -100, max: 100, toleranced: true, preset: 0 }),
+  neighbour_ppm: number('sensitivity to a neighbour conductor, share of that to the own', { unit: 'ppm', min: -1e5, max: 1e5, toleranced: true, preset: 0 }),
+  coilTurns: number('turns of a coil on the core for degaussing', { unit: '', min: 0, max: 10000, integer: true, preset: 0 }),
 });
 
 const sensor = group('linear Hall sensor in the gap', {
@@ -23,6 +47,13 @@ const sensor = group('linear Hall sensor in the gap', {
   swingHigh_V: number('highest output the sensor reaches', { unit: 'V', min: 0, aboveMin: true, max: 100, toleranced: true, preset: 4.8 }),
   bandwidth_kHz: number('-3 dB corner of the sensor (one pole)', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
   noise_uT_per_rtHz: number('white noise density referred to the field', { unit: 'µT/√Hz', min: 0, max: 1000, toleranced: true, preset: 0 }),
+  noiseCorner_Hz: number('frequency below which 1/f noise exceeds the white noise', { unit: 'Hz', min: 0, max: 1e6, toleranced: true, preset: 0 }),
+  wander_uT_per_rth: number('slow random walk of the rest output, referred to the field', { unit: 'µT/√h', min: 0, max: 1e5, toleranced: true, preset: 0 }),
+  nonlinearity_percent: number('third-order deviation at linearTo_mT, share of linearTo_mT', { unit: '%', min: -20, max: 20, toleranced: true, preset: 0 }),
+  linearTo_mT: number('field at which nonlinearity_percent is given', { unit: 'mT', min: 0, aboveMin: true, max: 1e4, preset: 100 }),
+  count: number('sensors in the gap whose outputs are averaged', { unit: '', min: 1, max: 16, integer: true, preset: 1 }),
+  mismatch_percent: number('how far the sensitivity of each of several sensors may be off', { unit: '%', min: 0, max: 50, preset: 0 }),
+  timeConstant_s: number('thermal time constant towards the ambient', { unit: 's', min: 0, max: 1e5, toleranced: true, preset: 0 }),
   bias: choice('how the bias of the Hall plate is switched, for a chain that demodulates', ['steady', 'reversal', 'quarter turn'], 'steady'),
   biasPhase_samples: number('A/D samples in one phase of a switched bias', { unit: 'samples', min: 2, max: 65536, integer: true, preset: 32 }),
   plateOffset_mT: number('offset of the plate itself, referred to the field; part of rest_V when the bias is steady', { unit: 'mT', min: -100, max: 100, toleranced: true, preset: 0 }),
@@ -32,9 +63,15 @@ const amplifier = group('amplifier between sensor and A/D converter, around a vi
   gain: number('voltage gain', { unit: '', min: -1e4, max: 1e4, toleranced: true }),
   virtualGround_V: number('the voltage that the amplifier keeps in place', { unit: 'V', min: 0, max: 100, toleranced: true }),
   offset_mV: number('input offset voltage', { unit: 'mV', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  offsetDrift_uV_per_K: number('change of the input offset with temperature', { unit: 'µV/K', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  gainBandwidth_MHz: number('gain-bandwidth product; left out: no limit', { unit: 'MHz', min: 0, aboveMin: true, max: 1e5, toleranced: true, preset: null }),
+  slew_V_per_us: number('fastest change of the output; left out: no limit', { unit: 'V/µs', min: 0, aboveMin: true, max: 1e5, toleranced: true, preset: null }),
+  recovery_us: number('time that the output stays at its rail after an overload', { unit: 'µs', min: 0, max: 1e6, toleranced: true, preset: 0 }),
+  timeConstant_s: number('thermal time constant towards the ambient', { unit: 's', min: 0, max: 1e5, toleranced: true, preset: 0 }),
   railLow_V: number('lowest output', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 0 }),
   railHigh_V: number('highest output', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 5 }),
-  bandwidth_kHz: number('-3 dB corner (one pole), also the anti-alias filter', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+  bandwidth_kHz: number('-3 dB corner of the anti-alias filter', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+  filterOrder: number('order of the anti-alias filter: 1 is an RC, more is Butterworth', { unit: '', min: 1, max: 4, integer: true, preset: 1 }),
 });
 
 const converter = group('A/D converter', {
@@ -46,6 +83,12 @@ const converter = group('A/D converter', {
   justified: choice('where the code stands in its word', ['right', 'left'], 'right'),
   word_bits: number('width of the word that holds a code', { unit: 'bits', min: 8, max: 32, integer: true, preset: 16 }),
   noise_codes: number('noise of the converter, standard deviation', { unit: 'codes', min: 0, max: 1000, toleranced: true, preset: 0 }),
+  referenceDrift_ppm_per_K: number('change of a fixed reference with temperature', { unit: 'ppm/K', min: -10000, max: 10000, toleranced: true, preset: 0 }),
+  offset_codes: number('offset error', { unit: 'codes', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  gainError_percent: number('gain error', { unit: '%', min: -10, max: 10, toleranced: true, preset: 0 }),
+  inl_codes: number('integral nonlinearity: height of a bow that is zero at both ends', { unit: 'codes', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  dnl_codes: number('differential nonlinearity: standard deviation of the code widths, the same for a unit for ever', { unit: 'codes', min: 0, max: 0.5, preset: 0 }),
+  jitter_ns: number('jitter of the sampling instant, standard deviation', { unit: 'ns', min: 0, max: 1e6, preset: 0 }),
 });
 
 const thermometer = group('thermometer beside the sensor, read by the firmware', {
@@ -57,6 +100,13 @@ const thermometer = group('thermometer beside the sensor, read by the firmware',
   at25_V: number('output of a linear element at 25 °C', { unit: 'V', min: 0, max: 100, toleranced: true, preset: 0.75 }),
   reference_V: number('full scale of its converter', { unit: 'V', min: 0.1, max: 100, toleranced: true, preset: 3.3 }),
   bits: number('resolution of its converter', { unit: 'bits', min: 6, max: 24, integer: true, preset: 12 }),
+  timeConstant_s: number('thermal time constant towards the ambient', { unit: 's', min: 0, max: 1e5, toleranced: true, preset: 0 }),
+  every_ms: number('time between two temperature codes', { unit: 'ms', min: 0.01, max: 60000, preset: 100 }),
+}, 'absent');
+
+const coupling = group('what reaches the sensor leads beside the Hall voltage', {
+  loop_mm2: number('area between the leads that the field in the gap crosses', { unit: 'mm²', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  slew_mV_per_V_per_ns: number('voltage in the leads for a conductor voltage that changes by a volt a nanosecond', { unit: 'mV per V/ns', min: -1000, max: 1000, toleranced: true, preset: 0 }),
 }, 'absent');
 
 const start = choice('state at the first sample: as if that sample had always been there, or all zero', ['primed', 'zero'], 'primed');
@@ -181,7 +231,9 @@ const currentLevelOr = (meaning: string, preset: number) => number(meaning, { un
 const frequency = number('frequency', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7 });
 const edge = number('duration of an edge from level to level', { unit: 'µs', min: 0, max: 1e9, preset: 1 });
 
-const current = variant('the current in the conductor', 'shape', {
+const atMs = (meaning: string) => number(meaning, { unit: 'ms', min: 0, max: MAX_TIME_MS });
+
+const simpleCurrents = {
   dc: { level_A: currentLevel('current') },
   staircase: {
     levels_A: list('the levels in turn', currentLevel('one level'), { min: 1, max: 1000 }),
@@ -200,6 +252,7 @@ const current = variant('the current in the conductor', 'shape', {
     frequency_Hz: frequency,
     duty_percent: number('share of the period while on, between the middles of the edges', { unit: '%', min: 0, max: 100 }),
     edge_us: edge,
+    swing_V: number('voltage step of the conductor at each edge, in the direction of the current', { unit: 'V', min: -1e5, max: 1e5, preset: 0 }),
   },
   step: {
     from_A: currentLevelOr('current before', 0),
@@ -214,19 +267,94 @@ const current = variant('the current in the conductor', 'shape', {
     timeUnit: choice('unit of the time column where its heading names none', ['s', 'ms', 'µs', 'ns'], 's'),
     currentUnit: choice('unit of the current column where its heading names none', ['A', 'mA', 'µA', 'kA'], 'A'),
   },
-}, {
+  harmonics: {
+    peak_A: currentLevel('amplitude of the fundamental'),
+    frequency_Hz: frequency,
+    offset_A: currentLevelOr('direct current below it', 0),
+    percents: list('amplitude of harmonics 2, 3, 4, ... in percent of the fundamental', number('one harmonic', { unit: '%', min: -1000, max: 1000 }), { min: 1, max: 100 }),
+    phases_deg: list('their phases at the start; missing ones are 0', number('one phase', { unit: '°', min: -360, max: 360 }), { max: 100, optional: true }),
+  },
+  ripple: {
+    mean_A: currentLevel('direct current of a converter inductor'),
+    peakToPeak_A: number('ripple from valley to peak', { unit: 'A', min: 0, max: 1e6 }),
+    frequency_Hz: frequency,
+    duty_percent: number('share of the period while rising', { unit: '%', min: 1, max: 99, preset: 50 }),
+  },
+  inrush: {
+    peak_A: currentLevel('peak at switch-on'),
+    steady_A: currentLevelOr('what remains', 0),
+    timeConstant_ms: number('time constant of the decay', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    at_ms: atMs('when it is switched on'),
+    frequency_Hz: number('mains frequency; 0: direct current', { unit: 'Hz', min: 0, max: 1e6, preset: 0 }),
+  },
+  motor: {
+    stall_A: currentLevel('current while the rotor stands'),
+    run_A: currentLevel('current while it turns'),
+    runUp_ms: number('time constant of running up', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    electrical_ms: number('electrical time constant of the winding', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 1 }),
+    at_ms: atMs('when it is switched on'),
+    stallAt_ms: number('when the rotor is blocked; left out: never', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: null }),
+  },
+  pulse: {
+    base_A: currentLevelOr('current outside', 0),
+    peak_A: currentLevel('current inside'),
+    at_ms: atMs('when its first edge starts'),
+    width_us: number('width between the middles of its edges', { unit: 'µs', min: 0, aboveMin: true, max: 1e9 }),
+    edge_us: edge,
+  },
+  ramp: {
+    from_A: currentLevelOr('current before', 0),
+    to_A: currentLevel('current after'),
+    at_ms: atMs('when it starts'),
+    rise_ms: number('how long it takes', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+  },
+  sweep: {
+    peak_A: currentLevel('amplitude'),
+    from_Hz: frequency,
+    to_Hz: frequency,
+    over_ms: number('time from the first to the last frequency, evenly in octaves', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+    offset_A: currentLevelOr('direct current below it', 0),
+  },
+  phaseCut: {
+    peak_A: currentLevel('amplitude of the uncut sine'),
+    frequency_Hz: frequency,
+    firing_deg: number('angle from each zero crossing until the current starts', { unit: '°', min: 0, max: 180 }),
+    edge_us: edge,
+  },
+};
+
+const currentMeanings = {
   dc: 'steady current',
   staircase: 'levels in turn',
   sine: 'sine, with or without direct current',
   pwm: 'pulse-width modulated current with finite edges',
   step: 'one step',
   file: 'a recorded current',
-});
+  harmonics: 'a fundamental with its harmonics',
+  ripple: 'triangle ripple on a direct current',
+  inrush: 'a decaying peak at switch-on',
+  motor: 'start and stall of a motor',
+  pulse: 'one pulse',
+  ramp: 'one ramp',
+  sweep: 'a sine whose frequency rises or falls',
+  phaseCut: 'mains current behind a dimmer',
+};
 
+const part = variant('one part of a sum', 'shape', simpleCurrents, currentMeanings);
+
+const current = variant('the current in the conductor', 'shape', {
+  ...simpleCurrents,
+  sum: {
+    parts: list('the parts', part, { min: 1, max: 20 }),
+    times: number('factor on the sum', { unit: '', min: -1e6, max: 1e6, preset: 1 }),
+  },
+}, { ...currentMeanings, sum: 'parts added, and scaled' });
+
+/** jaw opened: for that long, then closed; polarity: for that long the probe is around the conductor the other way. */
 const event = group('something that happens during a scenario', {
   at_ms: number('when it begins', { unit: 'ms', min: 0, max: MAX_TIME_MS }),
   for_ms: number('how long it lasts', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 10 }),
-  event: choice('what', ['zero button', 'sticky clear', 'degaussed', 'power cycle']),
+  event: choice('what', ['zero button', 'sticky clear', 'degaussed', 'power cycle', 'jaw opened', 'polarity']),
 });
 
 const scenario = group('one run of the probe', {
@@ -237,8 +365,22 @@ const scenario = group('one run of the probe', {
   judgeFrom_ms: number('readings before this are not judged', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 0 }),
   settle_ms: number('time after each level of a staircase, or after a step, that is not judged', { unit: 'ms', min: 0, max: MAX_TIME_MS, preset: 0 }),
   temperature_C: number('temperature of the whole probe', { unit: '°C', min: -100, max: 200, preset: 25 }),
-  supply_V: number('supply during the run; left out: the nominal supply', { unit: 'V', min: 0.5, max: 100, preset: null }),
+  ambient: list('ambient over time, on straight lines, held beyond the ends; empty: temperature_C throughout', group('one point', {
+    at_ms: atMs('when'),
+    temperature_C: number('ambient temperature', { unit: '°C', min: -100, max: 200 }),
+  }), { max: 1000, optional: true }),
+  supply_V: number('supply at the start; left out: the nominal supply', { unit: 'V', min: 0.5, max: 100, preset: null }),
+  supplySag_mV_per_s: number('how fast the supply (a battery) falls', { unit: 'mV/s', min: 0, max: 1e5, preset: 0 }),
+  outerField_uT: number('outer field along the sensitive axis; turns over with the event polarity', { unit: 'µT', min: -1e6, max: 1e6, preset: 0 }),
+  neighbour_A: number('steady current of a neighbour conductor', { unit: 'A', min: -1e6, max: 1e6, preset: 0 }),
+  coil: group('current in the coil for degaussing: a decaying sine', {
+    at_ms: atMs('when it starts'),
+    peak_A: number('first amplitude', { unit: 'A', min: 0, aboveMin: true, max: 1e4 }),
+    frequency_Hz: frequency,
+    decay_ms: number('time constant of its decay', { unit: 'ms', min: 0, aboveMin: true, max: MAX_TIME_MS }),
+  }, 'absent'),
   events: list('events, in any order', event, { max: 1000, optional: true }),
+  long: flag('played only when all scenarios are asked for', false),
 });
 
 const scenarioName = text('the scenario it is measured in');
@@ -260,6 +402,39 @@ const requirement = variant('what the probe must hold', 'measure', {
     band_percent: number('settled within this share of the step', { unit: '%', min: 0, aboveMin: true, max: 100, preset: 1 }),
     limit_ms: number('allowed time from the middle of the step', { unit: 'ms', min: 0, max: MAX_TIME_MS }),
   },
+  band: {
+    meter: meterName,
+    from_Hz: number('lower end of the band; 0: direct current', { unit: 'Hz', min: 0, max: 1e7 }),
+    to_Hz: number('upper end of the band', { unit: 'Hz', min: 0, max: 1e7 }),
+    points: number('frequencies tried, evenly in octaves', { unit: '', min: 1, max: 100, integer: true, preset: 5 }),
+    peak_A: number('amplitude, or direct current', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+    lowest_C: number('coldest temperature tried', { unit: '°C', min: -100, max: 200, preset: 25 }),
+    highest_C: number('warmest temperature tried', { unit: '°C', min: -100, max: 200, preset: 25 }),
+    ...allowance,
+  },
+  bandwidth: {
+    atLeast_Hz: number('-3 dB bandwidth of hardware and chain together that must be reached', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7 }),
+    peak_A: number('amplitude', { unit: 'A', min: 0, aboveMin: true, max: 1e6 }),
+  },
+  transition: { scenario: scenarioName, limit_ms: number('allowed transition duration, 10 % to 90 % (IEC 60469)', { unit: 'ms', min: 0, max: MAX_TIME_MS }) },
+  overshoot: { scenario: scenarioName, limit_percent: number('allowed overshoot, share of the step (IEC 60469)', { unit: '%', min: 0, max: 1000 }) },
+  zeroOverTemperature: {
+    lowest_C: number('coldest temperature tried', { unit: '°C', min: -100, max: 200 }),
+    highest_C: number('warmest temperature tried', { unit: '°C', min: -100, max: 200 }),
+    limit_A: number('allowed reading at zero current', { unit: 'A', min: 0, max: 1e6 }),
+  },
+  zeroAfterOverload: { scenario: scenarioName, limit_A: number('allowed change of the zero by the pulse', { unit: 'A', min: 0, max: 1e6 }) },
+  zeroOverTime: {
+    scenario: scenarioName,
+    tau_s: number('averaging time of the Allan deviation', { unit: 's', min: 0, aboveMin: true, max: 3600 }),
+    limit_A: number('allowed Allan deviation', { unit: 'A', min: 0, max: 1e6 }),
+  },
+  overRangeDelay: { scenario: scenarioName, limit_ms: number('allowed time from the current leaving the range to the first flagged reading', { unit: 'ms', min: 0, max: MAX_TIME_MS }) },
+  overRangeRecovery: { scenario: scenarioName, limit_ms: number('allowed time from the current being back in the range to the first good reading', { unit: 'ms', min: 0, max: MAX_TIME_MS }) },
+  gain: { scenario: scenarioName, limit_percent: number('allowed gain error at the frequency of the sine', { unit: '%', min: 0, max: 100 }) },
+  phase: { scenario: scenarioName, limit_deg: number('allowed phase error beyond the stated delay', { unit: '°', min: 0, max: 180 }) },
+  sinad: { scenario: scenarioName, atLeast_dB: number('signal to noise and distortion that must be reached', { unit: 'dB', min: 0, max: 200 }) },
+  effectiveBits: { scenario: scenarioName, atLeast_bits: number('effective bits that must be reached, of twice the range', { unit: 'bits', min: 0, max: 32 }) },
   swallowed: { limit_A: number('largest direct current that all automatic zeroing together may remove', { unit: 'A', min: 0, max: 1e6 }) },
 }, {
   reading: 'every unflagged reading against the true current, delayed as the chain states',
@@ -268,6 +443,19 @@ const requirement = variant('what the probe must hold', 'measure', {
   acRms: 'AC RMS of each meter window against that of the true current',
   noise: 'standard deviation of the reading',
   settling: 'time after a step until the reading stays within a band around its end value',
+  band: 'true RMS (mean at direct current) of a meter at the worst frequency of a band and the worst of its temperatures',
+  bandwidth: '-3 dB bandwidth, by sines',
+  transition: 'transition duration of a step',
+  overshoot: 'overshoot of a step',
+  zeroOverTemperature: 'reading at zero current at the worst of the temperatures',
+  zeroAfterOverload: 'change of the zero by a pulse of current',
+  zeroOverTime: 'Allan deviation of the reading at a steady current',
+  overRangeDelay: 'time until an over-range is told',
+  overRangeRecovery: 'time until readings are good again after an over-range',
+  gain: 'gain at the frequency of a sine, by four-parameter fit (IEEE 1057)',
+  phase: 'phase at the frequency of a sine, by four-parameter fit (IEEE 1057)',
+  sinad: 'signal to noise and distortion, by four-parameter fit (IEEE 1057)',
+  effectiveBits: 'effective bits, by four-parameter fit (IEEE 1057)',
   swallowed: 'direct current that zeroing may remove, from the constants',
 });
 
@@ -285,6 +473,7 @@ export const PROBE = group('a probe: hardware, firmware chain, and what it must 
   supply_V: number('supply of sensor and amplifier', { unit: 'V', min: 0.5, max: 100, toleranced: true, preset: 5 }),
   core,
   sensor,
+  coupling,
   amplifier,
   converter,
   thermometer,

@@ -28,8 +28,8 @@ export function rowLines(row: Row, paint: Paint): string[] {
   const verdict = row.holds ? paint.good('holds'.padEnd(8)) : paint.bad('SHORT'.padEnd(8));
   const share = (row.share === null ? '' : `${shareText(row.share)} %`).padStart(7);
   const measured = (row.value === null ? 'not measured' : quantity(row.value, row.unit)).padStart(12);
-  const allowed = quantity(row.limit, row.unit).padStart(12);
-  const name = row.scenario === '' || row.measure === 'unexplainedFlags' ? titleOf(row) : `${titleOf(row)}: ${row.scenario}`;
+  const allowed = `${row.better === 'more' ? '≥ ' : ''}${quantity(row.limit, row.unit)}`.padStart(12);
+  const name = row.scenario === '' || WHOLE_RUN.includes(row.measure) ? titleOf(row) : `${titleOf(row)}: ${row.scenario}`;
   const line = `${verdict}${share}  ${name.padEnd(38)}  ${measured}  ${allowed}  ${paint.faint(row.where)}`;
   return row.because === null ? [line] : [line, `${' '.repeat(8)}because ${row.because}`];
 }
@@ -39,9 +39,14 @@ function shareText(share: number): string {
   return percent >= 10 || percent === 0 ? percent.toFixed(0) : percent.toPrecision(2);
 }
 
+/** Measures of the run as a whole: their scenario is only the worst one, named in the reason. */
+const WHOLE_RUN = ['unexplainedFlags', 'hiddenClipping'];
+
 const TITLES: { [measure: string]: string } = {
-  reading: 'reading', mean: 'mean', trueRms: 'true RMS', acRms: 'AC RMS', noise: 'noise', settling: 'settling',
-  swallowed: 'direct current that zeroing may swallow', unexplainedFlags: 'flags without a cause',
+  trueRms: 'true RMS', acRms: 'AC RMS', zeroOverTemperature: 'zero over temperature', zeroAfterOverload: 'zero after overload',
+  zeroOverTime: 'zero over time', overRangeDelay: 'over-range delay', overRangeRecovery: 'over-range recovery', sinad: 'SINAD',
+  effectiveBits: 'effective bits', swallowed: 'direct current that zeroing may swallow', unexplainedFlags: 'flags without a cause',
+  hiddenClipping: 'clipping behind a clean status',
 };
 
 function titleOf(row: Row): string {
@@ -51,7 +56,8 @@ function titleOf(row: Row): string {
 export function quantity(value: number, unit: string): string {
   if (unit === 'readings') return `${value}`;
   if (unit === 'A' && value !== 0 && Math.abs(value) < 0.1) return `${(value * 1e3).toPrecision(3)} mA`;
-  return value === 0 ? `0 ${unit}` : `${value.toPrecision(4)} ${unit}`;
+  const space = unit === '°' ? '' : ' ';
+  return value === 0 ? `0${space}${unit}` : `${value.toPrecision(4)}${space}${unit}`;
 }
 
 export function summaryLines(verdict: Verdict, paint: Paint): string[] {
@@ -61,9 +67,13 @@ export function summaryLines(verdict: Verdict, paint: Paint): string[] {
     ? paint.good(`All ${verdict.rows.length} requirements hold.`)
     : paint.bad(`${short} of ${verdict.rows.length} requirements fall short.`);
   return [
-    '', overall, '', ...shownLines(summary), '', ...presetLines(summary, paint), '',
+    '', overall, ...leftOutLines(verdict.leftOut), '', ...shownLines(summary), '', ...presetLines(summary, paint), '',
     ...summary.warnings.map((warning) => `Warning: ${warning}`), reachOfVerdict(verdict), ...CAUTIONS,
   ];
+}
+
+function leftOutLines(leftOut: number): string[] {
+  return leftOut === 0 ? [] : [`${leftOut} more of long scenarios were not asked for: --all.`];
 }
 
 function shownLines(summary: Summary): string[] {

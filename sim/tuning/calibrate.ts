@@ -27,7 +27,7 @@ function meanCode(
   const scenario: Scenario = {
     name: `calibration at ${amperes} A`, about: '', current: { shape: 'dc', level_A: amperes },
     duration_ms: (samples + SETTLE_SAMPLES) / probe.converter.rate_kHz, judgeFrom_ms: 0, settle_ms: 0, temperature_C: celsius,
-    supply_V: null, events: [],
+    ambient: [], supply_V: null, supplySag_mV_per_s: 0, outerField_uT: 0, neighbour_A: 0, coil: null, events: [], long: false,
   };
   const bench = new Bench(probe, scenario, options);
   const stages = decoders(probe);

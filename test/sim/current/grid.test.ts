@@ -66,7 +66,8 @@ test('jumps that fall on the grid do not jitter: every one of 100 000 periods ha
     (period, frequency_Hz, on) => {
       const high = 1 + (on % (period - 1));
       const spec: CurrentSpec =
-        { shape: 'pwm', low_A: 0, high_A: 1, frequency_Hz, duty_percent: (100 * high) / period, edge_us: 0 };
+        { shape: 'pwm', low_A: 0, high_A: 1, frequency_Hz, duty_percent: (100 * high) / period, edge_us: 0,
+          swing_V: 0 };
       const source = openCurrent(spec, 1 / (frequency_Hz * period), '.');
       const block = new Float64Array(period * 1000);
       const expected = Float64Array.from({ length: period * 1000 }, (_, n) => (n % period < high ? 1 : 0));
@@ -82,40 +83,72 @@ describe('how the calls cut the grid changes no value', () => {
   folder.write('record.csv', 'ms,A\n' + Array.from({ length: 60 }, (_, i) =>
     `${(i * 0.37 + (i % 3) * 0.11).toFixed(3)},${((i * 37) % 11) - 5.3}`).join('\n'));
   const level = fc.double({ min: -1e6, max: 1e6, noNaN: true });
-  const specs: fc.Arbitrary<CurrentSpec> = fc.oneof(
-    fc.record({ shape: fc.constant('dc' as const), level_A: level }),
-    fc.record({ shape: fc.constant('sine' as const), peak_A: level, offset_A: level,
-      frequency_Hz: fc.double({ min: 0.1, max: 1e6, noNaN: true }), phase_deg: fc.integer({ min: -360, max: 360 }) }),
-    fc.record({ shape: fc.constant('pwm' as const), low_A: level, high_A: level, edge_us: fc.constantFrom(0, 1, 40),
-      frequency_Hz: fc.integer({ min: 1, max: 5000 }), duty_percent: fc.integer({ min: 20, max: 80 }) }),
-    fc.record({ shape: fc.constant('step' as const), from_A: level, to_A: level,
-      at_ms: fc.double({ min: 0, max: 15, noNaN: true }), edge_us: fc.constantFrom(0, 1, 3333) }),
-    fc.record({ shape: fc.constant('staircase' as const), levels_A: fc.array(level, { minLength: 1, maxLength: 30 }),
+  const hertz = fc.double({ min: 0.1, max: 1e6, noNaN: true });
+  const ms = fc.double({ min: 0, max: 15, noNaN: true });
+  const longMs = fc.double({ min: 0.01, max: 25, noNaN: true });
+  const shape = <const K extends CurrentSpec['shape']>(name: K): fc.Arbitrary<K> => fc.constant(name);
+  type Simple = Exclude<CurrentSpec, { shape: 'sum' }>;
+  const simple: fc.Arbitrary<Simple> = fc.oneof(
+    fc.record({ shape: shape('dc'), level_A: level }),
+    fc.record({ shape: shape('sine'), peak_A: level, offset_A: level, frequency_Hz: hertz,
+      phase_deg: fc.integer({ min: -360, max: 360 }) }),
+    fc.record({ shape: shape('pwm'), low_A: level, high_A: level, edge_us: fc.constantFrom(0, 1, 40),
+      frequency_Hz: fc.integer({ min: 1, max: 5000 }), duty_percent: fc.integer({ min: 20, max: 80 }),
+      swing_V: fc.constantFrom(0, 48, -600) }),
+    fc.record({ shape: shape('step'), from_A: level, to_A: level, at_ms: ms, edge_us: fc.constantFrom(0, 1, 3333) }),
+    fc.record({ shape: shape('staircase'), levels_A: fc.array(level, { minLength: 1, maxLength: 30 }),
       hold_ms: fc.double({ min: 0.4, max: 2, noNaN: true }), edge_us: fc.constantFrom(0, 1, 400) }),
-    fc.constant<CurrentSpec>({ shape: 'file', path: 'record.csv', timeColumn: '', currentColumn: '', timeUnit: 's',
+    fc.constant<Simple>({ shape: 'file', path: 'record.csv', timeColumn: '', currentColumn: '', timeUnit: 's',
       currentUnit: 'A' }),
+    fc.record({ shape: shape('harmonics'), peak_A: level, offset_A: level, frequency_Hz: hertz,
+      percents: fc.array(fc.double({ min: -1000, max: 1000, noNaN: true }), { minLength: 2, maxLength: 9 }),
+      phases_deg: fc.array(fc.integer({ min: -360, max: 360 }), { maxLength: 2 }) }),
+    fc.record({ shape: shape('ripple'), mean_A: level, peakToPeak_A: fc.nat(1e6), frequency_Hz: hertz,
+      duty_percent: fc.constantFrom(1, 37, 50, 99) }),
+    fc.record({ shape: shape('inrush'), peak_A: level, steady_A: level, timeConstant_ms: longMs, at_ms: ms,
+      frequency_Hz: fc.constantFrom(0, 50, 16.7) }),
+    fc.record({ shape: shape('motor'), stall_A: level, run_A: level, runUp_ms: longMs, at_ms: ms,
+      electrical_ms: fc.constantFrom(0, 0.3, 2), stallAt_ms: fc.constantFrom(null, 15, 17.123) }),
+    fc.record({ shape: shape('pulse'), base_A: level, peak_A: level, at_ms: ms,
+      width_us: fc.constantFrom(40, 2000, 1e6), edge_us: fc.constantFrom(0, 1, 40) }),
+    fc.record({ shape: shape('ramp'), from_A: level, to_A: level, at_ms: ms, rise_ms: longMs }),
+    fc.record({ shape: shape('sweep'), peak_A: level, from_Hz: hertz, to_Hz: hertz, over_ms: longMs, offset_A: level }),
+    fc.record({ shape: shape('phaseCut'), peak_A: level, frequency_Hz: fc.constantFrom(50, 60, 400),
+      firing_deg: fc.integer({ min: 0, max: 170 }), edge_us: fc.constantFrom(0, 1, 60) }),
   );
+  const sums = fc.record({ shape: shape('sum'), parts: fc.array(simple, { minLength: 1, maxLength: 4 }),
+    times: fc.constantFrom(1, -2.5, 0) });
+  const specs: fc.Arbitrary<CurrentSpec> =
+    fc.oneof({ weight: 3, arbitrary: simple }, { weight: 1, arbitrary: sums });
   const cuts = fc.array(fc.oneof(fc.constantFrom(0, 1, 2), fc.nat(700)), { maxLength: 40 });
 
-  test('any cutting of 2000 points', () => {
+  test('any cutting of 2000 points, for the current and for the slew of the conductor', () => {
     fc.assert(fc.property(specs, cuts, (spec, sizes) => {
-      const whole = new Float64Array(2000);
+      const whole = { amperes: new Float64Array(2000), slew: new Float64Array(2000) };
       const first = openCurrent(spec, 1e-5, folder.path);
-      first.next(whole, whole.length);
+      first.next(whole.amperes, 2000);
+      first.slew(whole.slew, 2000);
       first.close();
       const source = openCurrent(spec, 1e-5, folder.path);
-      const block = new Float64Array(whole.length);
-      const joined: number[] = [];
-      for (const size of [...sizes, whole.length]) {
-        const count = Math.min(size, whole.length - joined.length);
-        block.fill(NaN);
-        source.next(block, count);
-        expect(block.subarray(count).every(Number.isNaN)).toBe(true); // nothing written beyond what was asked
-        joined.push(...block.subarray(0, count));
+      const block = { amperes: new Float64Array(2000), slew: new Float64Array(2000) };
+      const joined = { amperes: [] as number[], slew: [] as number[] };
+      for (const size of [...sizes, 2000]) {
+        const count = Math.min(size, 2000 - joined.amperes.length);
+        block.amperes.fill(NaN);
+        block.slew.fill(NaN);
+        source.next(block.amperes, count);
+        source.slew(block.slew, count);
+        for (const part of ['amperes', 'slew'] as const) {
+          // nothing written beyond what was asked
+          expect(block[part].subarray(count).every(Number.isNaN)).toBe(true);
+          joined[part].push(...block[part].subarray(0, count));
+        }
       }
       source.close();
-      expect(whole.every(Number.isFinite)).toBe(true);
-      expect(Float64Array.from(joined)).toEqual(whole);
-    }), { numRuns: 300 });
+      expect(whole.amperes.every(Number.isFinite)).toBe(true);
+      expect(whole.slew.some((value) => value !== 0) && !source.swings).toBe(false);
+      expect(Float64Array.from(joined.amperes)).toEqual(whole.amperes);
+      expect(Float64Array.from(joined.slew)).toEqual(whole.slew);
+    }), { numRuns: 250 });
   });
 });

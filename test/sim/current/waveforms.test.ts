@@ -8,39 +8,14 @@ import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { openCurrent } from '../../../sim/current/source.ts';
 import type { CurrentSpec } from '../../../sim/probe/fields.ts';
+import { expectNear, points, statistics, SUMMED } from './statistics.ts';
 
-const SUMMED = 5e-13;
 const PERIOD = 1000; // grid points
-
-function points(spec: CurrentSpec, stepSeconds: number, count: number): Float64Array {
-  const amperes = new Float64Array(count);
-  const source = openCurrent(spec, stepSeconds, '.');
-  source.next(amperes, count);
-  expect(source.endSeconds).toBe(null);
-  source.close();
-  return amperes;
-}
-
-function statistics(amperes: Float64Array): { mean: number; meanSquare: number; rms: number } {
-  let sum = 0;
-  let squares = 0;
-  for (const value of amperes) {
-    sum += value;
-    squares += value * value;
-  }
-  const meanSquare = squares / amperes.length;
-  return { mean: sum / amperes.length, meanSquare, rms: Math.sqrt(meanSquare) };
-}
-
-/** Share of the scale of `expected`, at least 1. */
-function expectNear(actual: number, expected: number, tolerance: number): void {
-  expect(Math.abs(actual - expected)).toBeLessThanOrEqual(tolerance * Math.max(1, Math.abs(expected)));
-}
 
 const sine = (peak_A: number, offset_A = 0, phase_deg = 0): CurrentSpec =>
   ({ shape: 'sine', peak_A, frequency_Hz: 50, offset_A, phase_deg });
-const pwm = (low_A: number, high_A: number, duty_percent: number, edge_us: number): CurrentSpec =>
-  ({ shape: 'pwm', low_A, high_A, frequency_Hz: 1000, duty_percent, edge_us });
+const pwm = (low_A: number, high_A: number, duty_percent: number, edge_us: number, swing_V = 0): CurrentSpec =>
+  ({ shape: 'pwm', low_A, high_A, frequency_Hz: 1000, duty_percent, edge_us, swing_V });
 const PWM_STEP = 1e-3 / PERIOD;
 
 describe('steady', () => {

@@ -4,59 +4,14 @@ import {
   EVENT_CLEAR, EVENT_DEGAUSSED, EVENT_QUARTER, EVENT_REVERSED, EVENT_ZERO,
 } from '../../../lib/status.ts';
 import type { CurrentSpec, Probe, Scenario } from '../../../sim/probe/fields.ts';
-import { Bench, newCodeBlock, type CodeBlock } from '../../../sim/hardware/bench.ts';
+import { Bench, newCodeBlock } from '../../../sim/hardware/bench.ts';
 import { CLIP_AMPLIFIER, CLIP_CONVERTER, CLIP_SENSOR } from '../../../sim/hardware/clip.ts';
 import { nominalGain, nominalOffsetCodes, nominalTransfer } from '../../../sim/hardware/transfer.ts';
-import { exact, standProbe, standScenario } from './stand.ts';
+import { outcomeOf } from './outcome.ts';
+import { exact, standProbe, standScenario, standThermometer } from './stand.ts';
 
 const DC: CurrentSpec = { shape: 'dc', level_A: 0 };
 const SINE: CurrentSpec = { shape: 'sine', peak_A: 20, frequency_Hz: 1230, offset_A: 2, phase_deg: 30 };
-
-interface Outcome {
-  code: number[];
-  events: number[];
-  amperes: number[];
-  mean: number[];
-  meanSquare: number[];
-  clipped: number[];
-  temperatureCode: number;
-  /** First samples of blocks that follow a power cycle. */
-  powerCycles: number[];
-}
-
-interface Settings {
-  seed?: number;
-  trial?: number;
-  capacity?: number;
-  inside?: number;
-}
-
-function outcomeOf(probe: Probe, scenario: Scenario, settings: Settings = {}): Outcome {
-  const { seed = 1, trial = 0, capacity = 100, inside } = settings;
-  const bench = new Bench(probe, scenario, { seed, trial, folder: '.', capacity: inside });
-  const block = newCodeBlock(capacity);
-  const all: Outcome = {
-    code: [], events: [], amperes: [], mean: [], meanSquare: [], clipped: [], temperatureCode: 0, powerCycles: [],
-  };
-  while (bench.next(block)) append(all, block);
-  expect(all.code.length).toBe(bench.totalSamples);
-  expect(bench.next(block)).toBe(false);
-  bench.close();
-  return all;
-}
-
-function append(all: Outcome, block: CodeBlock): void {
-  if (block.powerCycle) all.powerCycles.push(all.code.length);
-  all.temperatureCode = block.temperatureCode;
-  for (let k = 0; k < block.count; k++) {
-    all.code.push(block.code[k]);
-    all.events.push(block.events[k]);
-    all.amperes.push(block.trueAmperes[k]);
-    all.mean.push(block.trueMean[k]);
-    all.meanSquare.push(block.trueMeanSquare[k]);
-    all.clipped.push(block.clipped[k]);
-  }
-}
 
 function noisyProbe(): Probe {
   const probe = standProbe();
@@ -118,13 +73,10 @@ describe('the doorway', () => {
 
   test('the temperature code is that of the thermometer; without one it is 0', () => {
     const probe = standProbe();
-    expect(outcomeOf(probe, standScenario(DC)).temperatureCode).toBe(0);
-    probe.thermometer = {
-      element: 'linear', resistance_ohm: exact(1e4), beta_K: exact(3435), series_ohm: exact(1e4), slope_mV_per_K: exact(10),
-      at25_V: exact(0.75), reference_V: exact(3.3), bits: 12,
-    };
+    expect(outcomeOf(probe, standScenario(DC)).temperatureCode[0]).toBe(0);
+    probe.thermometer = standThermometer();
     // (0.75 + 0.6) V/3.3 V * 4096
-    expect(outcomeOf(probe, standScenario(DC, { temperature_C: 85 })).temperatureCode).toBe(1676);
+    expect(outcomeOf(probe, standScenario(DC, { temperature_C: 85 })).temperatureCode[0]).toBe(1676);
   });
 });
 
@@ -187,7 +139,7 @@ describe('clipping', () => {
     probe.sensor.bandwidth_kHz = exact(1000);
     probe.amplifier.bandwidth_kHz = exact(2);
     const peaks: CurrentSpec = {
-      shape: 'pwm', low_A: 0, high_A: 90, frequency_Hz: 50_000, duty_percent: 10, edge_us: 0.1,
+      shape: 'pwm', low_A: 0, high_A: 90, frequency_Hz: 50_000, duty_percent: 10, edge_us: 0.1, swing_V: 0,
     };
     const { code, clipped } = outcomeOf(probe, standScenario(peaks));
     // the start is steady at the first value, maybe a peak: 2 ms are 25 time constants of the filter; then a tenth of

@@ -1,7 +1,7 @@
 import fc from 'fast-check';
 import { expect, test } from 'vitest';
 import { drawUnit, nominalUnit } from '../../../sim/hardware/draw.ts';
-import { standProbe } from './stand.ts';
+import { standCoupling, standProbe } from './stand.ts';
 
 function tolerantProbe() {
   const probe = standProbe();
@@ -49,6 +49,17 @@ test('a tolerance on one part leaves every other part as it was', () => {
   expect(after.core.permeability).not.toBe(2200);
   expect(after.supply_V).not.toBe(5);
   expect({ ...after, supply_V: 5, core: { ...after.core, permeability: 2200 } }).toEqual(before);
+});
+
+test('the leads are drawn like other parts; the gap at the joint is left to the closings of the jaw', () => {
+  const probe = standProbe();
+  probe.coupling = { ...standCoupling(), loop_mm2: { nominal: 5, tolerance: 2 } };
+  probe.core.jointGap_um = { nominal: 40, tolerance: 20 };
+  const units = Array.from({ length: 50 }, (_, i) => drawUnit(probe, 1, i + 1));
+  const areas = units.map((unit) => unit.coupling!.loop_mm2);
+  expect(new Set(areas).size).toBe(50);
+  for (const area of areas) expect(Math.abs(area - 5)).toBeLessThanOrEqual(2);
+  for (const unit of units) expect(unit.core.jointGap_um).toBe(40);
 });
 
 test('parts deviate independently of each other', () => {

@@ -1,6 +1,5 @@
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
-import { gridNoisePowerRatio } from '../../../sim/hardware/grid.ts';
 import { Pole, poleWeights } from '../../../sim/hardware/pole.ts';
 import { RandomStream } from '../../../sim/hardware/random.ts';
 
@@ -157,43 +156,6 @@ describe('noise', () => {
       const rising = simpson((s) => s * Math.exp(-(n - s) / tau) / tau, 0, 1);
       const falling = n < 2 ? 0 : simpson((s) => (2 - s) * Math.exp(-(n - s) / tau) / tau, 1, 2);
       expect(Math.abs(values[n] - rising - falling)).toBeLessThan(1e-11);
-    }
-  });
-
-  test('noise power behind a second pole: closed form = autocorrelation summed over the impulse response', () => {
-    for (const [sensorHz, amplifierHz, steps] of [[1, 1, 16], [5, 1, 80], [1, 5, 16], [1, 1, 1], [8, 1, 2]]) {
-      const response = new Float64Array(3000);
-      response[1] = 1;
-      new Pole(amplifierHz, 1 / steps).process(response, response.length);
-      const rho = Math.exp(-2 * Math.PI * sensorHz / steps);
-      let power = 0;
-      let weighted = 0; // sum over m of h[m] rho^(n-m), by its recursion
-      for (let n = 1; n < response.length; n++) {
-        power += response[n] * (response[n] + 2 * rho * weighted);
-        weighted = rho * weighted + response[n];
-      }
-      const exactShare = amplifierHz / (sensorHz + amplifierHz);
-      expect(gridNoisePowerRatio(sensorHz, amplifierHz, 1 / steps) / (power / exactShare)).toBeCloseTo(1, 11);
-    }
-  });
-
-  test('noise power behind two poles comes to the exact one with the square of the step', () => {
-    for (const steps of [256, 512, 1024]) {
-      const coarse = gridNoisePowerRatio(1, 3, 1 / steps) - 1;
-      const fine = gridNoisePowerRatio(1, 3, 1 / (2 * steps)) - 1;
-      // (2h)^2/h^2 = 4, less what the next even order adds: (2 pi 3/256)^2 = 0.5 % of it
-      expect(coarse / fine).toBeGreaterThan(3.95);
-      expect(coarse / fine).toBeLessThan(4.05);
-    }
-  });
-
-  test('with 16 steps for one period of the higher corner, noise power is right within 1.3 %', () => {
-    // worst against a far lower pole, which sees the density at f = 0 only: on the grid that is
-    // h * sum rho^|n| = h coth(r/2) instead of 2 tau, a factor (r/2) coth(r/2) < 1 + r^2/12, r = 2 pi/16
-    for (let decade = -3; decade <= 3; decade += 0.1) {
-      const other = 10 ** decade;
-      const ratio = gridNoisePowerRatio(1, other, 1 / (16 * Math.max(1, other)));
-      expect(Math.abs(ratio - 1)).toBeLessThan((2 * Math.PI / 16) ** 2 / 12);
     }
   });
 });

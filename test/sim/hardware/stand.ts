@@ -1,6 +1,7 @@
 /** A made-up probe (test stand for tram door drives, +-30 A) that the hardware tests bend to their needs. */
 import type { Toleranced } from '../../../sim/probe/describe.ts';
 import type { CurrentSpec, Probe, Scenario } from '../../../sim/probe/fields.ts';
+import { probeOf, quietProbe } from '../probes.ts';
 
 export function exact(nominal: number): Toleranced {
   return { nominal, tolerance: 0 };
@@ -8,29 +9,34 @@ export function exact(nominal: number): Toleranced {
 
 export function standScenario(current: CurrentSpec, change: Partial<Scenario> = {}): Scenario {
   return {
-    name: 'run', about: '', current, duration_ms: 10, judgeFrom_ms: 0, settle_ms: 0, temperature_C: 25, supply_V: null, events: [],
+    name: 'run', about: '', current, duration_ms: 10, judgeFrom_ms: 0, settle_ms: 0, temperature_C: 25, ambient: [],
+    supply_V: null, supplySag_mV_per_s: 0, outerField_uT: 0, neighbour_A: 0, coil: null, events: [], long: false,
     ...change,
   };
 }
 
+const STAND = probeOf(quietProbe({
+  name: 'door drive',
+  sensor: { sensitivity_mV_per_mT: 50, rest_V: 2.5, bandwidth_kHz: 50 },
+  coupling: {},
+  amplifier: { gain: 1.5, virtualGround_V: 2.5, bandwidth_kHz: 20 },
+  converter: { bits: 12, rate_kHz: 50, reference_V: 5 },
+  thermometer: { element: 'linear' },
+}));
+
+/** Without chain, scenarios and requirements: the hardware only. Coupling and thermometer are left out. */
 export function standProbe(): Probe {
   return {
-    name: 'door drive', about: '', range_A: 30, direction: 1, supply_V: exact(5),
-    core: { gap_mm: exact(2), path_mm: exact(80), permeability: exact(2200), turns: 1 },
-    sensor: {
-      sensitivity_mV_per_mT: exact(50), sensitivityDrift_ppm_per_K: exact(0), rest_V: exact(2.5),
-      restDrift_mV_per_K: exact(0), ratiometric: false, swingLow_V: exact(0.2), swingHigh_V: exact(4.8), bandwidth_kHz: exact(50),
-      noise_uT_per_rtHz: exact(0), bias: 'steady', biasPhase_samples: 32, plateOffset_mT: exact(0),
-    },
-    amplifier: {
-      gain: exact(1.5), virtualGround_V: exact(2.5), offset_mV: exact(0), railLow_V: exact(0), railHigh_V: exact(5),
-      bandwidth_kHz: exact(20),
-    },
-    converter: {
-      bits: 12, rate_kHz: 50, reference: 'fixed', reference_V: exact(5), format: 'offset binary', justified: 'right',
-      word_bits: 16, noise_codes: exact(0),
-    },
-    thermometer: null, calibration: null, gridFactor: null, chain: [],
-    scenarios: [], requirements: [],
+    ...structuredClone(STAND), coupling: null, thermometer: null, gridFactor: null, chain: [], scenarios: [],
+    requirements: [],
   };
+}
+
+/** The parts that standProbe leaves out, with default values. */
+export function standCoupling(): NonNullable<Probe['coupling']> {
+  return structuredClone(STAND.coupling!);
+}
+
+export function standThermometer(): NonNullable<Probe['thermometer']> {
+  return structuredClone(STAND.thermometer!);
 }

@@ -8,7 +8,7 @@ import {
 function unitOf(change: Partial<ThermometerUnit> = {}): ThermometerUnit {
   return {
     element: 'thermistor', resistance_ohm: 10000, beta_K: 3435, series_ohm: 10000, slope_mV_per_K: 10, at25_V: 0.75,
-    reference_V: 3.3, bits: 12, ...change,
+    reference_V: 3.3, bits: 12, timeConstant_s: 0, every_ms: 100, ...change,
   };
 }
 

@@ -51,6 +51,50 @@ test('drift over temperature is that of the sensor through the amplifier', () =>
   expect(nominalOffsetCodes(probe, 25)).toBe(0);
 });
 
+test('position, joint gap and a core with memory count at zero current', () => {
+  const probe = standProbe();
+  probe.core.position_percent = exact(2);
+  probe.core.jointGap_um = exact(100);
+  const { codesPerAmpere } = nominalTransfer(probe);
+  expect(codesPerAmpere / (1.02 * (MU0 / (2.1e-3 + 80e-3 / 2200)) * 50 * 1.5 * 4096 / 5)).toBeCloseTo(1, 12);
+  probe.core.play = {
+    coercivity_A_per_m: exact(15), remanence_T: exact(0.2), saturation_T: exact(0.45), loopFile: '',
+  };
+  // the permeability of the file is that of small signals
+  expect(nominalTransfer(probe).codesPerAmpere).toBe(codesPerAmpere);
+});
+
+test('errors of the converter: offset, gain, reference over temperature, and the bow at the rest code', () => {
+  const probe = standProbe();
+  probe.converter.offset_codes = exact(5);
+  probe.converter.gainError_percent = exact(1);
+  probe.converter.referenceDrift_ppm_per_K = exact(100);
+  const plain = nominalTransfer(standProbe());
+  expect(nominalTransfer(probe).restCode).toBeCloseTo(2048 * 1.01 + 5, 9);
+  expect(nominalTransfer(probe).codesPerAmpere / plain.codesPerAmpere).toBeCloseTo(1.01, 12);
+  // 60 K * 100 ppm/K more volts for a code
+  expect(nominalGain(probe, 85)).toBeCloseTo(1 / 1.006, 12);
+  expect(nominalOffsetCodes(probe, 85)).toBeCloseTo(2048 * 1.01 * (1 / 1.006 - 1), 9);
+
+  const bowed = standProbe();
+  bowed.converter.inl_codes = exact(8);
+  bowed.sensor.rest_V = exact(0.5);
+  bowed.amplifier.gain = exact(1);
+  bowed.amplifier.virtualGround_V = exact(0);
+  const { restCode, codesPerVolt } = nominalTransfer(bowed);
+  // 409.6 codes; q = 409.1/4094, bow = 8 * 4 q (1 - q) and its slope 8 * 4 (1 - 2 q)/4094
+  const q = 409.1 / 4094;
+  expect(restCode).toBeCloseTo(409.6 + 32 * q * (1 - q), 9);
+  expect(codesPerVolt / (4096 / 5)).toBeCloseTo(1 + (32 * (1 - 2 * q)) / 4094, 12);
+});
+
+test('drift of the amplifier', () => {
+  const probe = standProbe();
+  probe.amplifier.offsetDrift_uV_per_K = exact(-20);
+  // 1.5 * -20 uV/K * 60 K * 4096/5 V
+  expect(nominalOffsetCodes(probe, 85)).toBeCloseTo(-1.47456, 9);
+});
+
 describe('behind a switched bias', () => {
   test('the rest drift is gone; reversal leaves the plate offset with the drift of the sensitivity', () => {
     const probe = standProbe();

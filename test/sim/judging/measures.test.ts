@@ -1,24 +1,10 @@
 import { describe, expect, test } from 'vitest';
 import { ErrorShape } from '../../../sim/judging/errorshape.ts';
-import { prove, type Row, type Verdict } from '../../../sim/judging/prove.ts';
 import { settlingOf } from '../../../sim/judging/settle.ts';
 import { swallowedAutomatically, swallowedOf } from '../../../sim/judging/swallowed.ts';
 import { tune } from '../../../sim/tuning/tune.ts';
 import { demoData, probeOf, quietProbe, QUIET_CODE_AMPERES, type Given } from '../probes.ts';
-
-function verdictOf(given: Given, options: { seed?: number; trial?: number; only?: string } = {}): Verdict {
-  const proving = prove(probeOf(given), { seed: 1, trial: 0, folder: '.', ...options });
-  for (;;) {
-    const step = proving.next();
-    if (step.done) return step.value;
-  }
-}
-
-function rowOf(given: Given, id: string): Row {
-  const row = verdictOf(given).rows.find((candidate) => candidate.id === id);
-  if (row === undefined) throw new Error(`no row ${id}`);
-  return row;
-}
+import { rowOf, verdictOf } from './proving.ts';
 
 const INTAKE = { stage: 'intake', guardBits: 4 };
 const STEADY = [{ name: 'steady', current: { shape: 'dc', level_A: 10 }, duration_ms: 20 }];

@@ -92,6 +92,16 @@ describe('a meter record', () => {
     }
   });
 
+  test('windows of a single sample are all read, although the ring of the meter is smaller than a block', () => {
+    const scenarios = [{ name: 'sine', current: { shape: 'sine', peak_A: 10, frequency_Hz: 50 }, duration_ms: 20 }];
+    const { records } = hear({
+      chain: [{ stage: 'intake', guardBits: 4 }, { stage: 'scale' }, { stage: 'meter', window_ms: 0.025 }], scenarios, requirements,
+    });
+    expect(records.length).toBe(800);
+    // at most 10 A * 2 pi * 50 Hz = 3142 A/s: 0.08 A from the begin of a period of 25 us to its end, where it is sampled
+    records.forEach(({ mean, truth }) => expect(Math.abs(mean - truth.mean)).toBeLessThan(0.1));
+  });
+
   test('windows follow one another without gap or overlap, also behind a power cycle', () => {
     const scenarios = [{
       name: 'sine', current: { shape: 'sine', peak_A: 10, frequency_Hz: 50 }, duration_ms: 200,

@@ -139,8 +139,8 @@ const BROKEN: [string, unknown, Problem][] = [
     problem('core.gap_mm.tolerence', 'an unknown field', 'the fields of this group', 'did you mean tolerance?')],
   ['core.turns', { nominal: 1, tolerance: 0 }, problem('core.turns', 'a group of fields', 'an integer 1 to 1000')],
   ['core.gapp_mm', 2, problem('core.gapp_mm', 'an unknown field', 'the fields of this group', 'did you mean gap_mm?')],
-  ['core.colour', 'grey',
-    problem('core.colour', 'an unknown field', 'gap_mm, path_mm, permeability, turns')],
+  ['calibration.colour', 'grey',
+    problem('calibration.colour', 'an unknown field', 'at_C, span_A, samples')],
   ['sensor.bandwidth_MHz', 1,
     problem('sensor.bandwidth_MHz', 'an unknown field', 'the fields of this group', 'did you mean bandwidth_kHz?')],
   ['sensor.noise', 1,
@@ -208,7 +208,9 @@ test('__proto__ and the names of Object are unknown fields, and nothing is pollu
 test('fields inherited from a prototype do not count as given', () => {
   const given = tramDoor();
   given.core = Object.create(Object.assign(Object.create(null), given.core));
-  expect(problemsOf(given).map((entry) => entry.path)).toEqual(['core.gap_mm', 'core.path_mm', 'core.permeability']);
+  // the turns of the coil are not given either
+  expect(problemsOf(given).map((entry) => entry.path))
+    .toEqual(['core.gap_mm', 'core.path_mm', 'core.permeability', 'scenarios[6].coil']);
 });
 
 function numbersIn(field: Field, name: string): { name: string; field: Extract<Field, { kind: 'number' }> }[] {
