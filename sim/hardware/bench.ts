@@ -281,7 +281,8 @@ export class Bench {
   }
 }
 
-function wholeSamples(probe: Probe, scenario: Scenario): number {
+/** A/D samples of a scenario. */
+export function wholeSamples(probe: Probe, scenario: Scenario): number {
   const { rate_kHz } = probe.converter;
   // a duration of whole samples must not lose one by the last bit of a product
   const samples = Math.floor(scenario.duration_ms * rate_kHz + SAME_INSTANT);

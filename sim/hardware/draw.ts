@@ -10,7 +10,9 @@ import { RandomStream } from './random.ts';
 
 type Drawn<T> = T extends Toleranced ? number : T extends object ? { [K in keyof T]: Drawn<T[K]> } : T;
 
-const PARTS = ['supply_V', 'core', 'sensor', 'coupling', 'amplifier', 'converter', 'thermometer'] as const;
+const PARTS = [
+  'supply_V', 'core', 'sensor', 'coupling', 'amplifier', 'converter', 'thermometer', 'shunt', 'transformer',
+] as const;
 
 const DRAWN_AT_EACH_CLOSING = 'core.jointGap_um';
 
@@ -21,6 +23,8 @@ export type CouplingUnit = NonNullable<Unit['coupling']>;
 export type AmplifierUnit = Unit['amplifier'];
 export type ConverterUnit = Unit['converter'];
 export type ThermometerUnit = NonNullable<Unit['thermometer']>;
+export type ShuntUnit = NonNullable<Unit['shunt']>;
+export type TransformerUnit = NonNullable<Unit['transformer']>;
 
 type Choose = (part: Toleranced, path: string) => number;
 

@@ -61,7 +61,7 @@ export class ChangingSurroundings {
 }
 
 /** The ambient from here on, until the next line begins. */
-interface AmbientLine {
+export interface AmbientLine {
   seconds: number;
   celsius: number;
   /** K/s */
@@ -69,7 +69,7 @@ interface AmbientLine {
 }
 
 /** From time 0 on; the last line is level. */
-function ambientLines(scenario: Scenario): AmbientLine[] {
+export function ambientLines(scenario: Scenario): AmbientLine[] {
   const points = scenario.ambient.map(
     ({ at_ms, temperature_C }) => ({ seconds: at_ms * 1e-3, celsius: temperature_C }));
   if (points.length === 0) return [{ seconds: 0, celsius: scenario.temperature_C, slope: 0 }];
@@ -80,7 +80,7 @@ function ambientLines(scenario: Scenario): AmbientLine[] {
   });
 }
 
-class ThermalLag {
+export class ThermalLag {
   /** The part's own temperature where each line begins. */
   private readonly own: number[];
   private current = 0;

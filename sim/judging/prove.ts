@@ -16,6 +16,7 @@ import { play, type Observer, type Played } from './play.ts';
 import { settlingOf, type ChainSettling } from './settle.ts';
 import { studyFor, type Study } from './study.ts';
 import { swallowedAutomatically, swallowedOf, type Swallowed } from './swallowed.ts';
+import { weigh, type Weighed } from './weigh.ts';
 
 export interface Row {
   /** Stable: measure, meter where there is one, and scenario, or what is asked of a made one; #2 for a second like it. */
@@ -53,6 +54,8 @@ export interface Summary {
   delayMs: number;
   warnings: string[];
   presets: WeighedPreset[];
+  /** Front ends that could stand in the probe's place; empty where the file has none. */
+  weighed: Weighed[];
 }
 
 export interface Verdict {
@@ -103,7 +106,7 @@ export function* prove(probe: Probe, options: ProveOptions): Generator<Row, Verd
   return {
     probe: probe.name, seed, trial, tolerances: countTolerances(probe), rows, leftOut: leftOutOf(probe, options),
     holds: rows.every((row) => row.holds),
-    summary: gathering.summary(options.presets ?? []),
+    summary: { ...gathering.summary(options.presets ?? []), weighed: weigh(probe, options) },
   };
 }
 
@@ -321,7 +324,7 @@ class Gathering {
     };
   }
 
-  summary(presets: Preset[]): Summary {
+  summary(presets: Preset[]): Omit<Summary, 'weighed'> {
     const { tuned, probe } = this;
     const noise = this.noise?.measure.result();
     return {

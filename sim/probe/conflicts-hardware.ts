@@ -24,6 +24,8 @@ export function hardwareConflicts(probe: Probe, note: Note): void {
       '0, or left out, as converter.reference is "supply"', 'only a fixed reference has a drift of its own');
   }
   thermometerConflicts(probe, note);
+  if (probe.shunt !== null) shuntConflicts(probe.shunt, note);
+  if (probe.transformer !== null) transformerConflicts(probe.transformer, note);
 }
 
 function memoryConflicts({ play, jilesAtherton }: Probe['core'], note: Note): void {
@@ -106,10 +108,13 @@ function amplifierConflicts(amplifier: Probe['amplifier'], note: Note): void {
   if (low.value < high.value) {
     mustLieWithin(note, volts('amplifier.virtualGround_V', amplifier.virtualGround_V.nominal), low, high);
   }
-  const { nominal, tolerance } = amplifier.gain;
-  if (nominal === 0) note('amplifier.gain', '0', 'a gain that is not 0', 'without gain no current is seen');
+  gainConflict('amplifier.gain', amplifier.gain, note);
+}
+
+function gainConflict(path: string, { nominal, tolerance }: Toleranced, note: Note): void {
+  if (nominal === 0) note(path, '0', 'a gain that is not 0', 'without gain no current is seen');
   else if (Math.abs(nominal) <= tolerance) {
-    note('amplifier.gain', `${nominal} ± ${tolerance}`, 'a gain that keeps its sign over its tolerance');
+    note(path, `${nominal} ± ${tolerance}`, 'a gain that keeps its sign over its tolerance');
   }
 }
 
@@ -117,6 +122,21 @@ function thermometerConflicts(probe: Probe, note: Note): void {
   const thermometer = probe.thermometer;
   if (thermometer !== null && thermometer.element === 'linear' && thermometer.slope_mV_per_K.nominal === 0) {
     note('thermometer.slope_mV_per_K', '0 mV/K', 'a slope that is not 0 for a linear element (thermometer.element)');
+  }
+}
+
+function shuntConflicts(shunt: NonNullable<Probe['shunt']>, note: Note): void {
+  const low = highestOf('shunt.railLow_V', shunt.railLow_V);
+  const high = lowestOf('shunt.railHigh_V', shunt.railHigh_V);
+  mustBeBelow(note, low, high);
+  if (low.value < high.value) mustLieWithin(note, volts('shunt.rest_V', shunt.rest_V.nominal), low, high);
+  gainConflict('shunt.gain', shunt.gain, note);
+}
+
+function transformerConflicts(transformer: NonNullable<Probe['transformer']>, note: Note): void {
+  const { nominal, tolerance } = transformer.saturatedShare_percent;
+  if (nominal + tolerance > 100) {
+    note('transformer.saturatedShare_percent', `${nominal} ± ${tolerance} %`, '100 % at most over its tolerance');
   }
 }
 

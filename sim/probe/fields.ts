@@ -109,6 +109,32 @@ const coupling = group('what reaches the sensor leads beside the Hall voltage', 
   slew_mV_per_V_per_ns: number('voltage in the leads for a conductor voltage that changes by a volt a nanosecond', { unit: 'mV per V/ns', min: -1000, max: 1000, toleranced: true, preset: 0 }),
 }, 'absent');
 
+/** Beside the probe, on the same currents; a shunt is in the circuit, so jaw, turning over and supply leave it alone. */
+const shunt = group('shunt in series with the conductor, to weigh against the probe', {
+  resistance_mOhm: number('resistance at 25 °C', { unit: 'mΩ', min: 0, aboveMin: true, max: 1e6, toleranced: true }),
+  tempco_ppm_per_K: number('change of the resistance with its temperature', { unit: 'ppm/K', min: -1000, max: 10000, toleranced: true, preset: 0 }),
+  thermalResistance_K_per_W: number('self-heating for each watt in it', { unit: 'K/W', min: 0, max: 10000, toleranced: true, preset: 0 }),
+  timeConstant_s: number('thermal time constant towards the ambient', { unit: 's', min: 0, max: 1e5, toleranced: true, preset: 0 }),
+  gain: number('voltage gain of its amplifier', { unit: '', min: -1e5, max: 1e5, toleranced: true }),
+  rest_V: number('output of its amplifier without current', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 2.5 }),
+  offset_mV: number('input offset voltage of its amplifier', { unit: 'mV', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  offsetDrift_uV_per_K: number('change of the input offset with temperature', { unit: 'µV/K', min: -1000, max: 1000, toleranced: true, preset: 0 }),
+  noise_nV_per_rtHz: number('white noise density at the input of its amplifier', { unit: 'nV/√Hz', min: 0, max: 1e6, toleranced: true, preset: 0 }),
+  bandwidth_kHz: number('-3 dB corner of its amplifier (one pole)', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+  railLow_V: number('lowest output, and the lower end of an ideal converter of converter.bits', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 0 }),
+  railHigh_V: number('highest output, and the upper end of that converter', { unit: 'V', min: -100, max: 100, toleranced: true, preset: 5 }),
+}, 'absent');
+
+const transformer = group('current transformer around the conductor, to weigh against the probe', {
+  turns: number('turns of its winding; the conductor is one turn', { unit: '', min: 1, max: 100000, integer: true }),
+  burden_ohm: number('burden resistor', { unit: 'Ω', min: 0, aboveMin: true, max: 1e6, toleranced: true }),
+  winding_ohm: number('resistance of the winding', { unit: 'Ω', min: 0, max: 1e6, toleranced: true, preset: 0 }),
+  magnetising_mH: number('magnetising inductance of the winding', { unit: 'mH', min: 0, aboveMin: true, max: 1e9, toleranced: true }),
+  saturation_V_ms: number('volt-seconds in the winding at which the core saturates; left out: never', { unit: 'V·ms', min: 0, aboveMin: true, max: 1e9, toleranced: true, preset: null }),
+  saturatedShare_percent: number('magnetising inductance that is left beyond that', { unit: '%', min: 0, aboveMin: true, max: 100, toleranced: true, preset: 1 }),
+  bandwidth_kHz: number('-3 dB corner by leakage and winding capacitance (one pole)', { unit: 'kHz', min: 0, aboveMin: true, max: 1e5, toleranced: true }),
+}, 'absent');
+
 const start = choice('state at the first sample: as if that sample had always been there, or all zero', ['primed', 'zero'], 'primed');
 
 const stage = variant('one stage of the chain, in engineering units', 'stage', {
@@ -478,6 +504,8 @@ export const PROBE = group('a probe: hardware, firmware chain, and what it must 
   converter,
   thermometer,
   calibration,
+  shunt,
+  transformer,
   gridFactor: number('analog steps for one A/D sample; left out: 16 times the highest corner over the A/D rate', { unit: '', min: 1, max: 4096, integer: true, preset: null }),
   chain: list('the stages in order', stage, { min: 2, max: 32 }),
   scenarios: list('the runs', scenario, { min: 1, max: 200 }),

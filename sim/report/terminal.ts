@@ -5,6 +5,7 @@
 import { styleText } from 'node:util';
 import type { Row, Summary, Verdict } from '../judging/prove.ts';
 import { CAUTIONS, reachOfVerdict } from './caution.ts';
+import { weighedLines } from './weigh.ts';
 
 /** Lines of defaults on a terminal; the JSON has all of them. */
 const PRESETS_SHOWN = 12;
@@ -67,7 +68,7 @@ export function summaryLines(verdict: Verdict, paint: Paint): string[] {
     ? paint.good(`All ${verdict.rows.length} requirements hold.`)
     : paint.bad(`${short} of ${verdict.rows.length} requirements fall short.`);
   return [
-    '', overall, ...leftOutLines(verdict.leftOut), '', ...shownLines(summary), '', ...presetLines(summary, paint), '',
+    '', overall, ...leftOutLines(verdict.leftOut), '', ...shownLines(summary), ...weighedLines(summary.weighed), '', ...presetLines(summary, paint), '',
     ...summary.warnings.map((warning) => `Warning: ${warning}`), reachOfVerdict(verdict), ...CAUTIONS,
   ];
 }
