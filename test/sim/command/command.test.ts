@@ -77,7 +77,7 @@ describe('prove', () => {
     const { status, out } = hallproof(folder, 'prove', 'quiet.json', '--json');
     expect(status).toBe(0);
     const verdict = JSON.parse(out);
-    expect(verdict.rows.map((row: { id: string }) => row.id)).toEqual(['reading@steady', 'unexplainedFlags']);
+    expect(verdict.rows.map((row: { id: string }) => row.id)).toEqual(['reading@steady', 'hiddenClipping', 'unexplainedFlags']);
     expect(verdict).toMatchObject({ holds: true, seed: 1, trial: 1, cautions: CAUTIONS });
   });
 
