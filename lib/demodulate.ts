@@ -10,7 +10,9 @@
  * the measured one; and current near the switching frequency reads as DC.
  * First sample: SETTLING and y = 0 until each phase has been seen. A phase longer than `longest` (the bias does not
  * switch) sets STUCK. A phase wholly blanked keeps the old mean. Lingering bits of the samples in a mean stay with every
- * y made from it, also while settling; those of other samples do not come out. Delay: half a period of all phases; DC gain 1. Bound: longest * (|x| + 1) < 2^53.
+ * y made from it, also while settling; those of other samples do not come out.
+ * Delay: (5 phases - blank) / 2 samples for a quarter turn, (3 phases - blank) / 2 for reversal, on average over the phase
+ * for which an output is held; DC gain 1. Bound: longest * (|x| + 1) < 2^53.
  */
 import { add, divideRound, shiftRound, subtract } from './arithmetic.ts';
 import { EVENT_QUARTER, EVENT_REVERSED, LINGERING, SETTLING, STUCK } from './status.ts';
@@ -136,7 +138,7 @@ export class Demodulate implements Stage {
   describe(): string {
     const c = this.constants;
     return 'demodulate: ' + (c.quarter ? 'quarter turn' : 'reversal') + ', ' + c.blank + ' samples blanked, phase at most ' +
-      c.longest + ' samples, delay half a period of the bias, gain 1';
+      c.longest + ' samples, delay ' + (c.quarter ? 5 : 3) + ' half phases less ' + c.blank / 2 + ', gain 1';
   }
 }
 

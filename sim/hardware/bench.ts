@@ -120,12 +120,12 @@ export class Bench {
       jointTolerance_um: trial === 0 ? 0 : probe.core.jointGap_um.tolerance,
     });
     this.coil = scenario.coil === null ? null : new CoilCurrent(scenario.coil, stepSeconds, capacity);
-    this.sensor = new Sensor(unit.sensor, { stepSeconds, gridFactor, capacity, seed, trial });
+    this.sensor = new Sensor(unit.sensor, { stepSeconds, gridFactor, capacity, seed, trial, scenario: scenario.name });
     this.coupling = unit.coupling === null ? null : new Coupling(unit.coupling, stepSeconds);
     this.tesla = new Float64Array(capacity);
     this.slew = new Float64Array(capacity);
     this.amplifier = new Amplifier(unit.amplifier, stepSeconds);
-    this.converter = new Converter(unit.converter, { seed, trial });
+    this.converter = new Converter(unit.converter, { seed, trial, scenario: scenario.name });
     this.thermometer = unit.thermometer;
     this.surroundings = new ChangingSurroundings(scenario, unit, probe.supply_V.nominal);
     this.epochSamples = this.surroundings.changes ? epochSamples(rateHz) : Infinity;

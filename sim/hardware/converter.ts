@@ -65,9 +65,10 @@ export class Converter {
   private readonly highest: number;
   private line: ConverterLine;
 
-  constructor(private readonly converter: ConverterUnit, { seed, trial }: { seed: number; trial: number }) {
-    this.noise = new RandomStream(seed, trial, 'converter noise');
-    this.jitter = new RandomStream(seed, trial, 'converter jitter');
+  constructor(private readonly converter: ConverterUnit, options: { seed: number; trial: number; scenario?: string }) {
+    const { seed, trial, scenario = '' } = options;
+    this.noise = new RandomStream(seed, trial, `converter noise ${scenario}`);
+    this.jitter = new RandomStream(seed, trial, `converter jitter ${scenario}`);
     this.jitterSeconds = converter.jitter_ns * 1e-9;
     this.highest = 2 ** converter.bits - 1;
     const widths = new RandomStream(seed, trial, 'converter code widths');

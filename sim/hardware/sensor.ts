@@ -33,6 +33,8 @@ export interface SensorOptions {
   seed: number;
   /** In trial 0 several sensors are alike. */
   trial: number;
+  /** Noise differs from scenario to scenario, what is drawn with the unit does not. */
+  scenario?: string;
 }
 
 export function sensorLine(
@@ -109,10 +111,11 @@ class HallElement {
   private stepsLeft: number;
 
   constructor(private readonly sensor: SensorUnit, options: SensorOptions, index: number) {
-    const { stepSeconds, gridFactor, capacity, seed, trial } = options;
-    const stream = (source: string) => new RandomStream(seed, trial, `sensor ${index + 1} ${source}`);
+    const { stepSeconds, gridFactor, capacity, seed, trial, scenario = '' } = options;
+    const unitStream = (source: string) => new RandomStream(seed, trial, `sensor ${index + 1} ${source}`);
+    const stream = (source: string) => unitStream(`${source} ${scenario}`);
     const mismatch = trial === 0 || sensor.count === 1 ? 0 : sensor.mismatch_percent * 1e-2;
-    this.relativeSensitivity = mismatch === 0 ? 1 : 1 + mismatch * (2 * stream('mismatch').uniform() - 1);
+    this.relativeSensitivity = mismatch === 0 ? 1 : 1 + mismatch * (2 * unitStream('mismatch').uniform() - 1);
     this.pole = new Pole(sensor.bandwidth_kHz * 1e3, stepSeconds);
     this.white = stream('noise');
     const density = sensor.noise_uT_per_rtHz * 1e-6;

@@ -6,6 +6,7 @@
 import { Block, Demodulate, Intake, SETTLING, type Stage } from '../../lib/index.ts';
 import { Bench, newCodeBlock } from '../hardware/bench.ts';
 import type { Probe, Scenario, StageSpecOf } from '../probe/fields.ts';
+import { ProbeError } from '../probe/problem.ts';
 import { tuneStage } from './stages.ts';
 import { nominalMeasured, type Measured } from './unit.ts';
 
@@ -36,11 +37,13 @@ function meanCode(
   let sum = 0;
   let count = 0;
   let position = 0;
+  let clipped = false;
   while (bench.next(codes)) {
     block.count = codes.count;
     for (let i = 0; i < codes.count; i++) {
       block.value[i] = codes.code[i];
       block.status[i] = codes.events[i];
+      clipped ||= codes.clipped[i] !== 0;
     }
     for (const stage of stages) stage.process(block);
     for (let i = 0; i < block.count; i++, position++) {
@@ -50,6 +53,10 @@ function meanCode(
     }
   }
   bench.close();
+  if (clipped) {
+    const allowed = 'currents at which neither sensor, amplifier nor converter clips';
+    throw new ProbeError([{ path: 'calibration.span_A', found: `clipping at ${amperes} A`, allowed, hint: 'calibrate with a smaller span' }]);
+  }
   return sum / count;
 }
 

@@ -9,20 +9,21 @@ export function delayOf(design: readonly StageConstants[], ratios: readonly numb
   let delay = 0;
   design.forEach((stage, index) => {
     const ratioAhead = index === 0 ? 1 : ratios[index - 1];
-    delay += ratioAhead * stageDelay(stage, probe);
+    delay += ratioAhead * stageDelay(stage, probe.sensor.biasPhase_samples / ratioAhead);
   });
   return delay;
 }
 
-/** In samples at the input of the stage. */
-export function stageDelay(stage: StageConstants, probe: Probe): number {
+/** In samples at the input of the stage; `phaseSamples`: the length of a bias phase there. */
+export function stageDelay(stage: StageConstants, phaseSamples: number): number {
   switch (stage.kind) {
     case 'despike': return (stage.window - 1) / 2;
     case 'average': return (stage.length - 1) / 2;
     case 'decimate': return (stage.order * (stage.ratio - 1)) / 2;
     case 'sections': return stage.sections.reduce((sum, section) => sum + sectionDelay(section), 0);
-    // all phases are as old as half their common length when the last one ends, and then held for one phase
-    case 'demodulate': return (((stage.quarter === 1 ? 4 : 2) + 1) * probe.sensor.biasPhase_samples) / 2;
+    // the means are half the common length of all phases old when the last one ends, less half of what is blanked at
+    // their begin; the output is then held for a phase, half a phase on average
+    case 'demodulate': return (((stage.quarter === 1 ? 4 : 2) + 1) * phaseSamples - stage.blank) / 2;
     default: return 0;
   }
 }
