@@ -4,8 +4,8 @@
  *   theta over one step h: theta1 = theta0 * keep + (1 - keep) * Rth * R * (mean of i^2),  keep = exp(-h/tau)
  *   wanted = rest + gain * (R i + offset + drift * (Tambient - 25 °C)), one pole with its white noise, then the rails
  *   reading = (code's volts - nominal rest) / (nominal gain * nominal R25)
- * The mean of i^2 is that of the straight line between grid points; R is that of the step's beginning. The shunt has not
- * carried current before the first point. Source: textbook heat flow, one thermal resistance and one capacity.
+ * The mean of i^2 is that of the straight line between grid points; R is that of the step's beginning. The shunt has
+ * carried no current before the first point. Source: textbook heat flow, one thermal resistance and one capacity.
  */
 import { CLIP_AMPLIFIER, clipBlock } from './clip.ts';
 import type { ShuntUnit } from './draw.ts';

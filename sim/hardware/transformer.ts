@@ -2,9 +2,9 @@
  * A current transformer: an ideal turns ratio, and beside it the magnetising inductance L that takes what is slow.
  *   d psi/dt = R * (i/N - im),  R = winding + burden,  volts at the burden = Rburden * (i/N - im)
  *   im = psi/L within the saturation flux linkage S, beyond it im = S/L + (psi - S)/(share * L), and the same negative
- * In each of the three ranges that is one pole with tau = L/R or share * L/R, solved exactly for a current of straight
- * lines between grid points (first-order hold, pole.ts); a step that ends in another range is cut where it crosses.
- * Leaving a range and coming back within one step is not seen. What is fast ends at the pole of leakage and capacitance.
+ * In each of the three regions that is one pole with tau = L/R or share * L/R, solved exactly for a current of straight
+ * lines between grid points (first-order hold, pole.ts); a step that ends in another region is cut where it crosses.
+ * Leaving a region and coming back within one step is not seen. What is fast ends at a pole of leakage and capacitance.
  * Starts in steady state: a current that was always there is all in im. Source: the transformer's equivalent circuit
  * referred to the secondary, in any textbook of electrical machines; volt-seconds: Faraday's law.
  */
@@ -12,7 +12,7 @@ import { CLIP_SENSOR } from './clip.ts';
 import type { TransformerUnit } from './draw.ts';
 import { Pole, poleWeights, type PoleWeights } from './pole.ts';
 
-/** Of one step; through all three ranges it takes two. */
+/** Of one step; through all three regions it takes two. */
 const MOST_CROSSINGS = 4;
 const HALVINGS = 52;
 
@@ -46,7 +46,7 @@ export class Transformer {
   /** Flux linkage (V s). */
   private flux = 0;
   /** 0: linear, 1 and -1: saturated. */
-  private range = 0;
+  private region = 0;
   private before = 0;
   private started = false;
   private points = 0;
@@ -74,7 +74,7 @@ export class Transformer {
     for (let i = 0; i < count; i++) {
       const amperes = values[i] * perTurn;
       this.step(amperes);
-      if (this.range !== 0) {
+      if (this.region !== 0) {
         marks[i] |= CLIP_SENSOR;
         this.pointsToSaturation ??= this.points + i;
       }
@@ -96,21 +96,21 @@ export class Transformer {
     const flux = henries * Math.abs(amperes);
     if (flux <= limitVoltSeconds) this.flux = henries * amperes;
     else {
-      this.range = Math.sign(amperes);
-      this.flux = this.range * (limitVoltSeconds + (saturatedHenries / henries) * (flux - limitVoltSeconds));
+      this.region = Math.sign(amperes);
+      this.flux = this.region * (limitVoltSeconds + (saturatedHenries / henries) * (flux - limitVoltSeconds));
     }
   }
 
   private magnetisingAmperes(): number {
-    const { flux, range, henries, saturatedHenries, limitVoltSeconds } = this;
-    if (range === 0) return flux / henries;
-    return range * (limitVoltSeconds / henries) + (flux - range * limitVoltSeconds) / saturatedHenries;
+    const { flux, region, henries, saturatedHenries, limitVoltSeconds } = this;
+    if (region === 0) return flux / henries;
+    return region * (limitVoltSeconds / henries) + (flux - region * limitVoltSeconds) / saturatedHenries;
   }
 
   private step(amperes: number): void {
-    const { before, range } = this;
+    const { before, region } = this;
     this.before = amperes;
-    const flux = this.along(range === 0 ? this.linear : this.saturated, before, amperes);
+    const flux = this.along(region === 0 ? this.linear : this.saturated, before, amperes);
     if (this.stays(flux)) this.flux = flux;
     else this.crossing(before, amperes);
   }
@@ -118,27 +118,27 @@ export class Transformer {
   private crossing(from: number, to: number): void {
     let seconds = this.stepSeconds;
     for (let crossings = 0; crossings < MOST_CROSSINGS; crossings++) {
-      const end = this.along(this.weights(this.range, seconds), from, to);
+      const end = this.along(this.weights(this.region, seconds), from, to);
       if (this.stays(end)) {
         this.flux = end;
         return;
       }
-      const edge = (this.range === 0 ? Math.sign(end) : this.range) * this.limitVoltSeconds;
-      const share = this.shareInRange(from, to, seconds);
+      const edge = (this.region === 0 ? Math.sign(end) : this.region) * this.limitVoltSeconds;
+      const share = this.shareInRegion(from, to, seconds);
       from += (to - from) * share;
       seconds -= share * seconds;
       this.flux = edge;
-      this.range = this.range === 0 ? Math.sign(edge) : 0;
+      this.region = this.region === 0 ? Math.sign(edge) : 0;
     }
   }
 
-  /** How much of the time passes before the flux leaves its range, by halving. */
-  private shareInRange(from: number, to: number, seconds: number): number {
+  /** How much of the time passes before the flux leaves its region, by halving. */
+  private shareInRegion(from: number, to: number, seconds: number): number {
     let inside = 0;
     let outside = 1;
     for (let n = 0; n < HALVINGS; n++) {
       const middle = (inside + outside) / 2;
-      const flux = this.along(this.weights(this.range, seconds * middle), from, from + (to - from) * middle);
+      const flux = this.along(this.weights(this.region, seconds * middle), from, from + (to - from) * middle);
       if (this.stays(flux)) inside = middle;
       else outside = middle;
     }
@@ -146,22 +146,22 @@ export class Transformer {
   }
 
   private stays(flux: number): boolean {
-    const { range, limitVoltSeconds } = this;
-    if (range === 0) return flux <= limitVoltSeconds && flux >= -limitVoltSeconds;
-    return range * flux >= limitVoltSeconds;
+    const { region, limitVoltSeconds } = this;
+    if (region === 0) return flux <= limitVoltSeconds && flux >= -limitVoltSeconds;
+    return region * flux >= limitVoltSeconds;
   }
 
-  /** The flux after the time of the weights, in the present range, while the current goes straight from..to. */
+  /** The flux after the time of the weights, in the present region, while the current goes straight from..to. */
   private along({ k1, k0 }: PoleWeights, from: number, to: number): number {
-    const { flux, range, henries, saturatedHenries, limitVoltSeconds } = this;
-    const inductance = range === 0 ? henries : saturatedHenries;
+    const { flux, region, henries, saturatedHenries, limitVoltSeconds } = this;
+    const inductance = region === 0 ? henries : saturatedHenries;
     // where the flux would settle without current in the loop
-    const level = range === 0 ? 0 : range * limitVoltSeconds * (1 - saturatedHenries / henries);
+    const level = region === 0 ? 0 : region * limitVoltSeconds * (1 - saturatedHenries / henries);
     return flux + k1 * (level + inductance * to - flux) + k0 * (level + inductance * from - flux);
   }
 
-  private weights(range: number, seconds: number): PoleWeights {
-    const henries = range === 0 ? this.henries : this.saturatedHenries;
+  private weights(region: number, seconds: number): PoleWeights {
+    const henries = region === 0 ? this.henries : this.saturatedHenries;
     return poleWeights(this.ohms / (2 * Math.PI * henries), seconds);
   }
 }

@@ -13,20 +13,9 @@ import { Shunt } from '../hardware/shunt.ts';
 import { ambientLines, epochSamples, ThermalLag } from '../hardware/surroundings.ts';
 import { Transformer } from '../hardware/transformer.ts';
 import type { Probe, Scenario } from '../probe/fields.ts';
+import { changeOf, ErrorTally, type WeighedScenario } from './errortally.ts';
 import { JudgedTimes } from './judgedtimes.ts';
 import { shuntAnywhere, shuntSentences, transformerAnywhere, transformerSentences } from './shortcomings.ts';
-
-export interface WeighedScenario {
-  scenario: string;
-  /** Readings judged; without any there is no error. */
-  readings: number;
-  worstAmperes: number | null;
-  worstSeconds: number | null;
-  rmsAmperes: number | null;
-  /** Of the judged samples: at a rail, or with a saturated core. */
-  clippedShare: number | null;
-  sentences: string[];
-}
 
 export interface Weighed {
   frontEnd: 'shunt' | 'transformer';
@@ -49,6 +38,8 @@ export interface WeighOptions {
 }
 
 const GRID_POINTS_AT_ONCE = 4096;
+/** Between two words about progress. */
+const SAMPLES_TO_TELL = 65536;
 
 export function weigh(probe: Probe, options: WeighOptions): Weighed[] {
   const { only, all } = options;
@@ -106,13 +97,17 @@ class Weighing {
     const { stepSeconds, gridFactor, totalSamples, amperes, scenario, options } = this;
     const lanes = [this.shunt, this.transformer].filter((lane) => lane !== null);
     const current = openCurrent(scenario.current, stepSeconds, options.folder);
+    let told = 0;
     try {
       while (this.sample < totalSamples) {
         const samples = this.steadySamples();
         current.next(amperes, samples * gridFactor);
         for (const lane of lanes) lane.hear(amperes, this.sample, samples, this.times);
         this.sample += samples;
-        options.progress?.(scenario.name, this.sample / totalSamples);
+        if (this.sample - told > SAMPLES_TO_TELL) {
+          told = this.sample;
+          options.progress?.(scenario.name, told / totalSamples);
+        }
       }
     } finally {
       current.close();
@@ -135,75 +130,6 @@ interface Grid {
   capacity: number;
 }
 
-/** What a judge wants to know of the readings of one front end, beside the truth. */
-export class Tally {
-  judged = 0;
-  clipped = 0;
-  worstAmperes = 0;
-  worstSeconds = 0;
-  truthSum = 0;
-  readingSum = 0;
-  private squares = 0;
-  /** Readings just before a change of the current and at the end of what follows. */
-  beforeChange: number | null = null;
-  afterChange: number | null = null;
-
-  constructor(readonly change: Change | null) {}
-
-  hear(seconds: number, reading: number, truth: number, clipped: boolean, judged: boolean): void {
-    const { change } = this;
-    if (change !== null) {
-      if (seconds <= change.fromSeconds) this.beforeChange = reading;
-      else if (seconds <= change.toSeconds) this.afterChange = reading;
-    }
-    if (!judged) return;
-    const error = reading - truth;
-    if (this.judged === 0 || Math.abs(error) > Math.abs(this.worstAmperes)) {
-      this.worstAmperes = error;
-      this.worstSeconds = seconds;
-    }
-    this.judged++;
-    if (clipped) this.clipped++;
-    this.squares += error * error;
-    this.truthSum += truth;
-    this.readingSum += reading;
-  }
-
-  result(scenario: Scenario, sentences: string[]): WeighedScenario {
-    const { judged, worstAmperes, worstSeconds } = this;
-    const base = { scenario: scenario.name, readings: judged, sentences };
-    if (judged === 0) return { ...base, worstAmperes: null, worstSeconds: null, rmsAmperes: null, clippedShare: null };
-    return {
-      ...base, worstAmperes, worstSeconds, rmsAmperes: Math.sqrt(this.squares / judged),
-      clippedShare: this.clipped / judged,
-    };
-  }
-}
-
-/** A change of the current to a level that stays until `toSeconds`. */
-export interface Change {
-  what: 'step' | 'pulse';
-  fromSeconds: number;
-  toSeconds: number;
-  amperes: number;
-}
-
-export function changeOf({ current, duration_ms }: Scenario): Change | null {
-  if (current.shape === 'step') {
-    return {
-      what: 'step', fromSeconds: current.at_ms * 1e-3, toSeconds: duration_ms * 1e-3,
-      amperes: current.to_A - current.from_A,
-    };
-  }
-  if (current.shape !== 'pulse') return null;
-  return {
-    what: 'pulse', fromSeconds: current.at_ms * 1e-3,
-    // its second edge begins one width behind the first
-    toSeconds: Math.min(duration_ms, current.at_ms + current.width_us * 1e-3) * 1e-3,
-    amperes: current.peak_A - current.base_A,
-  };
-}
-
 interface FrontEnd {
   process(values: Float64Array, marks: Uint8Array, count: number): void;
   readingAmperes(volts: number): number;
@@ -211,14 +137,14 @@ interface FrontEnd {
 
 /** One front end with its tally; the current stays untouched for the other one. */
 class Lane<F extends FrontEnd> {
-  protected readonly tally: Tally;
+  protected readonly tally: ErrorTally;
   private readonly volts: Float64Array;
   private readonly marks: Uint8Array;
 
   constructor(protected readonly frontEnd: F, protected readonly scenario: Scenario, private readonly grid: Grid) {
     this.volts = new Float64Array(grid.capacity);
     this.marks = new Uint8Array(grid.capacity);
-    this.tally = new Tally(changeOf(scenario));
+    this.tally = new ErrorTally(changeOf(scenario));
   }
 
   hear(amperes: Float64Array, first: number, samples: number, times: JudgedTimes): void {

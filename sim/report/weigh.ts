@@ -1,6 +1,7 @@
 /** Front ends beside the probe on a terminal: what each takes and cannot do, and its errors scenario by scenario. */
-import type { Weighed, WeighedScenario } from '../judging/weigh.ts';
+import type { WeighedScenario } from '../judging/errortally.ts';
 import { told } from '../judging/shortcomings.ts';
+import type { Weighed } from '../judging/weigh.ts';
 
 /** Nothing where the probe file has no front end to weigh. */
 export function weighedLines(weighed: readonly Weighed[]): string[] {
