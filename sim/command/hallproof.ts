@@ -43,7 +43,8 @@ process.stdout.on('error', (error: NodeJS.ErrnoException) => process.exit(error.
 try {
   process.exitCode = await main(process.argv.slice(2));
 } catch (error) {
-  if (!(error instanceof ProbeError || error instanceof CsvError || error instanceof UsageError || error instanceof RangeError)) throw error;
-  console.error(error.message);
+  const told = error instanceof ProbeError || error instanceof CsvError || error instanceof UsageError || error instanceof RangeError;
+  // anything else is a fault of ours, or of code in the probe file: its trace helps whoever mends it
+  console.error(told ? error.message : `unexpected: ${(error as Error)?.stack ?? String(error)}`);
   process.exitCode = BAD_INPUT;
 }

@@ -21,6 +21,8 @@ export interface Measured {
   /** Share of the allowance used: 1 is all of it. */
   share: number;
   where: string;
+  /** Share of the readings or windows that were flagged and left out of the error. */
+  leftOut?: number;
   /** What the error is made of, in words, for a failing row. */
   shape: string;
 }
@@ -100,10 +102,12 @@ class Worst {
     this.seconds = seconds;
   }
 
-  measured(shape: string): Measured {
+  /** `left`, `out`: how many were judged and how many were flagged and left out. */
+  measured(shape: string, left: number, out: number): Measured {
+    const flagged = out === 0 ? '' : `; ${((100 * out) / (left + out)).toPrecision(3)} % flagged and left out`;
     return {
-      value: this.error, limit: this.limit, unit: 'A', share: this.share, shape,
-      where: `at ${timeText(this.seconds)}, true ${this.truth.toPrecision(4)} A`,
+      value: this.error, limit: this.limit, unit: 'A', share: this.share, shape, leftOut: out / (left + out),
+      where: `at ${timeText(this.seconds)}, true ${this.truth.toPrecision(4)} A${flagged}`,
     };
   }
 }
@@ -136,7 +140,7 @@ export class ReadingError implements Measure {
 
   result(): Measured | string {
     if (this.left === 0) return nothingLeft(this.flagged, 'reading');
-    return this.worst.measured(this.shape.words(this.worst));
+    return this.worst.measured(this.shape.words(this.worst), this.left, this.flagged);
   }
 }
 
@@ -146,11 +150,16 @@ export class RecordError implements Measure {
   private readonly shape = new ErrorShape();
   private left = 0;
   private flagged = 0;
+  /** Windows that timed out although the meter counts whole cycles. */
+  private cycleless = 0;
+  private readonly wantsCycles: boolean;
   /** Why no window of this meter can show this current; null: they can. */
   private readonly tooShort: string | null;
 
   constructor(private readonly requirement: RecordAllowance, private readonly probe: Probe, scenario: Scenario) {
     this.tooShort = shortWindow(probe, requirement.meter, scenario);
+    const meter = probe.chain.find((stage) => stage.stage === 'meter' && stage.name === requirement.meter);
+    this.wantsCycles = meter?.stage === 'meter' && meter.cycles > 0;
   }
 
   /** The worst error as a share of the true value there. */
@@ -171,6 +180,10 @@ export class RecordError implements Measure {
       this.flagged++;
       return;
     }
+    if (this.wantsCycles && record.cycles === 0) {
+      this.cycleless++;
+      return;
+    }
     const statistic = this.requirement.measure;
     const truth = record.truth[statistic];
     const error = record[statistic] - truth;
@@ -181,8 +194,12 @@ export class RecordError implements Measure {
 
   result(): Measured | string {
     if (this.tooShort !== null) return this.tooShort;
+    if (this.cycleless > 0) {
+      return `${this.cycleless} of ${this.cycleless + this.left} windows of meter "${this.requirement.meter}" timed out without whole ` +
+        'cycles: its hysteresis_A is beyond the current, or its window_ms too short';
+    }
     if (this.left === 0) return nothingLeft(this.flagged, `window of meter "${this.requirement.meter}"`);
-    return this.worst.measured(this.shape.words(this.worst));
+    return this.worst.measured(this.shape.words(this.worst), this.left, this.flagged);
   }
 }
 

@@ -68,6 +68,8 @@ export interface Played {
   unusable: number;
   /** Judged readings that are flagged although nothing had happened to them. */
   unexplained: number;
+  /** The bits they carry. */
+  unexplainedBits: number;
   /** Judged readings that clipping has a part in although their status is clean. */
   hiddenClipping: number;
   clamped: number;
@@ -140,7 +142,7 @@ class Player {
       amperes: new Float64Array(BLOCK), truth: new Float64Array(BLOCK), now: new Float64Array(BLOCK), slope: new Float64Array(BLOCK), status: new Int32Array(BLOCK), judged: new Uint8Array(BLOCK),
     };
     this.played = {
-      samples: this.bench.totalSamples, readings: 0, judged: 0, unusable: 0, unexplained: 0, hiddenClipping: 0, clamped: 0,
+      samples: this.bench.totalSamples, readings: 0, judged: 0, unusable: 0, unexplained: 0, unexplainedBits: 0, hiddenClipping: 0, clamped: 0,
       clipped: { sensor: 0, amplifier: 0, converter: 0 }, largest: new Float64Array(this.chain.stages.length),
       zeroRemoved: null, statusSeen: 0,
     };
@@ -249,7 +251,10 @@ class Player {
       if (status & UNUSABLE) played.unusable++;
       else if (this.influenced[input - this.done] === 1) played.hiddenClipping++;
       const flags = status & (OVERLOAD | CLAMPED | STUCK);
-      if (flags !== 0 && input - this.causes[input - this.done] > this.memorySamples) played.unexplained++;
+      if (flags !== 0 && input - this.causes[input - this.done] > this.memorySamples) {
+        played.unexplained++;
+        played.unexplainedBits |= flags;
+      }
     }
     out.count = block.count;
     played.readings += block.count;

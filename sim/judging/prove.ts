@@ -3,9 +3,10 @@
  * requirements make for themselves, and gives one row a requirement as soon as it is known, then what the run as a
  * whole has shown. Nothing here prints.
  */
-import { TRACKING } from '../../lib/index.ts';
+import { CLAMPED, OVERLOAD, STUCK, TRACKING } from '../../lib/index.ts';
 import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import type { Preset } from '../probe/validate.ts';
+import { openCurrent } from '../current/source.ts';
 import { gridFactorOf } from '../hardware/grid.ts';
 import { countTolerances } from '../hardware/draw.ts';
 import { calibrate } from '../tuning/calibrate.ts';
@@ -32,6 +33,8 @@ export interface Row {
   better: Better;
   unit: string;
   share: number | null;
+  /** Share of the readings or windows that were flagged and left out of the error; more than half of them fails. */
+  leftOut: number;
   holds: boolean;
   because: string | null;
 }
@@ -91,6 +94,7 @@ export interface ProveOptions {
 export function* prove(probe: Probe, options: ProveOptions): Generator<Row, Verdict> {
   const { seed, trial } = options;
   const tuned = tune(probe, calibrate(probe, { seed, trial, folder: options.folder }), options.file ?? null);
+  readRecordedCurrents(probe, options);
   const gathering = new Gathering(probe, tuned);
   const player = new ScenarioPlayer(probe, tuned, options, gathering);
   const rows: Row[] = [];
@@ -108,6 +112,17 @@ export function* prove(probe: Probe, options: ProveOptions): Generator<Row, Verd
     holds: rows.every((row) => row.holds),
     summary: { ...gathering.summary(options.presets ?? []), weighed: weigh(probe, options) },
   };
+}
+
+/** Reads every recorded current through to its needed end, so that a bad line is told before the first row. */
+function readRecordedCurrents(probe: Probe, { only, all, folder }: ProveOptions): void {
+  const steps = 1024;
+  for (const { name, long, current, duration_ms } of probe.scenarios) {
+    if (current.shape !== 'file' || (only === undefined ? long && !all : name !== only)) continue;
+    const source = openCurrent(current, duration_ms / 1e3 / steps, folder);
+    source.next(new Float64Array(steps), steps);
+    source.close();
+  }
 }
 
 function leftOutOf(probe: Probe, { only, all }: ProveOptions): number {
@@ -172,19 +187,25 @@ class RowNames {
   }
 }
 
+/** A requirement of which more than this is flagged has not been shown. */
+const MOST_LEFT_OUT = 0.5;
+
 function rowOf(requirement: Requirement, study: Study, happened: Happened, trial: number): Row {
   const result = study.result();
   const meter = 'meter' in requirement && requirement.meter !== 'meter' ? `/${requirement.meter}` : '';
   const scenario = 'scenario' in requirement ? requirement.scenario : askedOf(requirement);
   const base = { id: `${requirement.measure}${meter}@${scenario}`, measure: requirement.measure, scenario, trial };
   if (typeof result === 'string') {
-    return { ...base, ...limitOf(requirement), where: '', value: null, share: null, holds: false, because: reason(result, happened) };
+    return { ...base, ...limitOf(requirement), where: '', value: null, share: null, leftOut: 0, holds: false, because: reason(result, happened) };
   }
-  const holds = result.share <= 1;
-  const { value, limit, unit, share, where } = result;
+  const { value, limit, unit, share, where, leftOut = 0 } = result;
+  const mostlyFlagged = leftOut > MOST_LEFT_OUT;
+  const holds = share <= 1 && !mostlyFlagged;
+  const shape = mostlyFlagged && share <= 1
+    ? `${(100 * leftOut).toPrecision(3)} % of the readings are flagged and left out: the few that are left prove little` : result.shape;
   return {
-    ...base, where, value, limit, better: result.better ?? 'less', unit, share: finiteOrNull(share), holds,
-    because: holds ? null : reason(result.shape, happened),
+    ...base, where, value, limit, better: result.better ?? 'less', unit, share: finiteOrNull(share), leftOut, holds,
+    because: holds ? null : reason(shape, happened),
   };
 }
 
@@ -261,7 +282,7 @@ function swallowedRow(tuned: Tuned, limitAmperes: number, trial: number): Row {
   const parts = list.filter((entry) => entry.by !== 'button').map((entry) => `${entry.by} ${entry.amperes.toPrecision(3)} A`);
   return {
     id: 'swallowed', measure: 'swallowed', scenario: '', trial, where: 'from the constants', value, limit: limitAmperes,
-    better: 'less', unit: 'A', share: finiteOrNull(shareOf(value, limitAmperes)), holds,
+    better: 'less', unit: 'A', share: finiteOrNull(shareOf(value, limitAmperes)), leftOut: 0, holds,
     because: holds ? null : `automatic zeroing may remove ${parts.join(' and ')}: narrow its windows`,
   };
 }
@@ -273,6 +294,7 @@ class Gathering {
   private readings = 0;
   private judged = 0;
   private readonly unexplained = new Tally();
+  private unexplainedBits = 0;
   private readonly hidden = new Tally();
   private zeroRemoved: { lowest: number; highest: number } | null = null;
   private noise: { scenario: string; measure: NoiseOfReading } | null = null;
@@ -297,6 +319,7 @@ class Gathering {
     this.readings += played.readings;
     this.judged += played.judged;
     this.unexplained.hear(scenario, played.unexplained);
+    this.unexplainedBits |= played.unexplainedBits;
     this.hidden.hear(scenario, played.hiddenClipping);
     const removed = played.zeroRemoved;
     if (removed === null) return;
@@ -306,8 +329,8 @@ class Gathering {
   }
 
   unexplainedRow(trial: number): Row {
-    return this.tallyRow('unexplainedFlags', this.unexplained, trial, 'are flagged although no node clipped and the current ' +
-      'stayed within the range: a limit of overRange is too tight');
+    return this.tallyRow('unexplainedFlags', this.unexplained, trial, 'are flagged although no node clipped and the current stayed ' +
+      `within the range: ${this.unexplainedWords()}`);
   }
 
   hiddenRow(trial: number): Row {
@@ -315,12 +338,20 @@ class Gathering {
       'code shows (set highCode, lowCode or limit_A of overRange inside it), or a filter ahead of the converter that hides it');
   }
 
+  private unexplainedWords(): string {
+    const words: string[] = [];
+    if (this.unexplainedBits & OVERLOAD) words.push('a code, limit or slew of overRange is too tight');
+    if (this.unexplainedBits & STUCK) words.push('codes stand still for stuckAfter_samples without being stuck: the noise is less than a code');
+    if (this.unexplainedBits & CLAMPED) words.push('a stage clamps within the range');
+    return words.join('; ');
+  }
+
   private tallyRow(measure: string, tally: Tally, trial: number, reason: string): Row {
     const { total, worst } = tally;
     const holds = total === 0;
     return {
       id: measure, measure, scenario: worst.scenario, trial, where: `${this.judged} readings judged`, value: total, limit: 0, better: 'less',
-      unit: 'readings', share: holds ? 0 : null, holds, because: holds ? null : `${worst.count} readings of "${worst.scenario}" ${reason}`,
+      unit: 'readings', share: holds ? 0 : null, leftOut: 0, holds, because: holds ? null : `${worst.count} readings of "${worst.scenario}" ${reason}`,
     };
   }
 

@@ -31,19 +31,27 @@ export interface RecordedVerdict {
   samples: number;
   readings: number;
   unusable: number;
-  /** null: no reference, or no `reading` requirement to judge by. */
+  /** null: no reference, no accuracy to judge by, or no reading left that is not flagged. */
   worst: { share: number; error: number; limit: number; sample: number; reference: number } | null;
   holds: boolean;
 }
 
 const BLOCK = 256;
 
+type Accuracy = Extract<Requirement, { measure: 'reading' | 'mean' }>;
+
+/** What recorded readings are judged by: the first accuracy of readings, or else of means. */
+function accuracyOf(probe: Probe): Accuracy | undefined {
+  const of = (measure: string): Accuracy | undefined => probe.requirements.find((r): r is Accuracy => r.measure === measure);
+  return of('reading') ?? of('mean');
+}
+
 export class RecordedPlayer {
   private readonly chain: Chain;
   private readonly block = new Block(BLOCK);
   private readonly truth: Truth;
   private readonly ratio: number;
-  private readonly allowance: Extract<Requirement, { measure: 'reading' }> | undefined;
+  private readonly allowance: Accuracy | undefined;
   private done = 0;
   readonly verdict: RecordedVerdict = { samples: 0, readings: 0, unusable: 0, worst: null, holds: true };
 
@@ -51,7 +59,7 @@ export class RecordedPlayer {
     this.chain = new Chain(tuned.constants, tuned.makers);
     this.ratio = tuned.ratios.at(-1)!;
     this.truth = new Truth(Math.ceil(tuned.delaySamples) + 2 * BLOCK);
-    this.allowance = probe.requirements.find((r): r is Extract<Requirement, { measure: 'reading' }> => r.measure === 'reading');
+    this.allowance = accuracyOf(probe);
   }
 
   push(sample: RecordedSample): void {

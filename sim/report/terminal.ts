@@ -29,7 +29,9 @@ export function rowLines(row: Row, paint: Paint): string[] {
   const verdict = row.holds ? paint.good('holds'.padEnd(8)) : paint.bad('SHORT'.padEnd(8));
   const share = (row.share === null ? '' : `${shareText(row.share)} %`).padStart(7);
   const measured = (row.value === null ? 'not measured' : quantity(row.value, row.unit)).padStart(12);
-  const allowed = `${row.better === 'more' ? '≥ ' : ''}${quantity(row.limit, row.unit)}`.padStart(12);
+  // an allowance in percent of something that was not measured is no number
+  const known = row.value !== null || row.limit !== 0;
+  const allowed = (known ? `${row.better === 'more' ? '≥ ' : ''}${quantity(row.limit, row.unit)}` : '').padStart(12);
   const name = row.scenario === '' || WHOLE_RUN.includes(row.measure) ? titleOf(row) : `${titleOf(row)}: ${row.scenario}`;
   const line = `${verdict}${share}  ${name.padEnd(38)}  ${measured}  ${allowed}  ${paint.faint(row.where)}`;
   return row.because === null ? [line] : [line, `${' '.repeat(8)}because ${row.because}`];

@@ -33,6 +33,11 @@ export function samplesOf(place: Place, seconds: number, field: string, least = 
   return Math.max(least, samples);
 }
 
+/** Most counts within a current: for what must not exceed it. */
+export function countsWithin(place: Place, amperes: number): number {
+  return Math.floor(amperes * place.countsPerAmpere);
+}
+
 /** Counts nearest to a current. */
 export function countsOf(place: Place, amperes: number): number {
   return Math.round(amperes * place.countsPerAmpere);

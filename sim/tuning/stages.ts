@@ -9,7 +9,7 @@ import type {
 import { celsiusOfCode, thermometerCodeUnrounded } from '../hardware/thermometer.ts';
 import { nominalUnit } from '../hardware/draw.ts';
 import type { Probe, StageSpec, StageSpecOf } from '../probe/fields.ts';
-import { complain, countsOf, samplesOf, type Place } from './place.ts';
+import { complain, countsOf, countsWithin, samplesOf, type Place } from './place.ts';
 import { tuneSections } from './sections.ts';
 
 const NO_LIMIT = 2147483647;
@@ -125,9 +125,9 @@ function tuneZero(spec: StageSpecOf<'zero'>, place: Place): ZeroConstants {
   return {
     kind: 'zero', startMode: spec.atStart ? 1 : 0, settleSamples: samplesOf(place, spec.settle_ms / 1e3, 'settle_ms'),
     meanSamples: samplesOf(place, spec.mean_ms / 1e3, 'mean_ms', 1), spanLimit: Math.max(1, countsOf(place, spec.span_A)),
-    windowLimit: countsOf(place, spec.window_A), buttonMode: spec.onButton ? 1 : 0, trackMode: spec.tracking ? 1 : 0,
-    trackWindow: countsOf(place, spec.trackWindow_A), holdSamples: samplesOf(place, spec.trackHold_s, 'trackHold_s'),
-    stepSamples: Math.min(NO_LIMIT, Math.max(1, step)), authority: countsOf(place, spec.trackAuthority_A),
+    windowLimit: countsWithin(place, spec.window_A), buttonMode: spec.onButton ? 1 : 0, trackMode: spec.tracking ? 1 : 0,
+    trackWindow: countsWithin(place, spec.trackWindow_A), holdSamples: samplesOf(place, spec.trackHold_s, 'trackHold_s'),
+    stepSamples: Math.min(NO_LIMIT, Math.max(1, step)), authority: countsWithin(place, spec.trackAuthority_A),
     suspectMode: spec.suspectAfterOverload ? 1 : 0, limit: place.roof,
   };
 }

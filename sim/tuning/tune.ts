@@ -50,12 +50,13 @@ export function tune(probe: Probe, measured: Measured = nominalMeasured(probe), 
     design.push(constants);
     valuesPerAmpere.push(scale);
   }
+  const makers = makersOf(probe, unit, problems);
   const constants = { design, unit };
   const report = checkConstants(constants);
   if (problems.length === 0) problems.push(...report.problems.map(asProbeProblem));
   if (problems.length > 0) throw new ProbeError(problems, file);
   return {
-    constants, makers: makersOf(probe), countsPerAmpere, readingsPerAmpere: scale, valuesPerAmpere, ratios: report.ratios,
+    constants, makers, countsPerAmpere, readingsPerAmpere: scale, valuesPerAmpere, ratios: report.ratios,
     limits: report.limits, delaySamples: delayOf(design, report.ratios, probe), meters: metersOf(probe),
   };
 }
@@ -91,14 +92,38 @@ function asProbeProblem(problem: ConstantsProblem): Problem {
   return { path, found: `${problem.kind} with ${problem.field} ${problem.value}`, allowed: problem.allowed, hint: problem.remedy };
 }
 
-function makersOf(probe: Probe): CustomMaker[] {
+/** Code of the probe file is called here once, so that what is wrong with it is told with its place. */
+function makersOf(probe: Probe, unit: UnitConstants, problems: Problem[]): CustomMaker[] {
   const makers: CustomMaker[] = [];
-  for (const spec of probe.chain) {
-    if (spec.stage !== 'custom' || spec.make === null) continue;
+  probe.chain.forEach((spec, index) => {
+    if (spec.stage !== 'custom' || spec.make === null) return;
     const make = spec.make as (words: readonly number[], unit: UnitConstants) => Stage;
-    makers.push({ name: spec.name, version: spec.version, make });
-  }
+    const path = pathTo(pathTo('chain', index), 'make');
+    const fault = faultOf(() => make(spec.words, unit));
+    if (fault !== null) problems.push({ path, found: fault, allowed: 'a function that returns a stage', hint: STAGE_HINT });
+    const other = makers.find(({ name, version }) => name === spec.name && version === spec.version);
+    if (other !== undefined && other.make !== make) {
+      problems.push({
+        path, found: `another function than that of an earlier stage "${spec.name}" version ${spec.version}`,
+        allowed: 'one function for one name and version', hint: 'give one of them another name or version',
+      });
+    }
+    if (other === undefined) makers.push({ name: spec.name, version: spec.version, make });
+  });
   return makers;
+}
+
+const STAGE_HINT = 'a stage has kind, fields, kept, state, ring, reset(), process(block) and describe()';
+
+function faultOf(make: () => Stage): string | null {
+  try {
+    const stage = make();
+    const whole = stage?.state instanceof Float64Array && stage.ring instanceof Int32Array && Array.isArray(stage.fields) &&
+      Array.isArray(stage.kept) && [stage.reset, stage.process, stage.describe].every((method) => typeof method === 'function');
+    return whole ? null : 'something that is no stage';
+  } catch (error) {
+    return `an error: ${(error as Error)?.message ?? String(error)}`;
+  }
 }
 
 function metersOf(probe: Probe): Map<string, number> {
