@@ -1,6 +1,7 @@
 /** hallproof constants: the integers that a probe's chain is made of, and what each stage is in one line. */
 import { Chain } from '../../lib/index.ts';
 import { loadProbe } from '../probe/load.ts';
+import { residueOf } from '../tuning/residue.ts';
 import { tune } from '../tuning/tune.ts';
 import { readArguments } from './arguments.ts';
 import { demoProbe } from './demo.ts';
@@ -29,6 +30,11 @@ export async function constantsCommand(given: string[]): Promise<number> {
   stages.forEach((stage, index) => {
     const rateHz = (probe.converter.rate_kHz * 1e3) / tuned.ratios[index];
     console.log(`${String(index + 1).padStart(2)}  ${stage.describe()}`);
+    const constants = tuned.constants.design[index];
+    if (constants.kind === 'sections') {
+      const { dither, meanError } = residueOf(constants);
+      console.log(`    at rest: dither ${dither} counts peak to peak, mean off by ${meanError.toPrecision(2)} counts`);
+    }
     console.log(`    behind it: ${rateHz} samples a second, ${tuned.valuesPerAmpere[index].toPrecision(8)} values an ampere, at most ±${tuned.limits[index]}`);
   });
   console.log(`delay of the reading: ${tuned.delaySamples.toPrecision(6)} input samples`);

@@ -1,6 +1,7 @@
 /**
  * Amplifier around a virtual ground, and the anti-alias filter behind it.
- *   wanted = virtualGround + gain * (Vin - virtualGround + offset + drift * (T - 25 °C))
+ *   wanted = virtualGround + gain * (Vin - virtualGround + offset + drift * (T - 25 °C)), the ground fixed or a share of
+ *   the supply
  * then one pole at gain-bandwidth / max(1, |gain|), slew limit, rails and recovery (outputstage.ts), then the filter:
  * an RC, or Butterworth from order 2 on. The rails scale with the supply. The limits come first: the filter smooths a
  * clipped peak, so the converter may see codes well inside its range while the amplifier clips. The judge must know
@@ -15,11 +16,12 @@ import { REFERENCE_CELSIUS } from './sensor.ts';
 import type { Surroundings } from './surroundings.ts';
 
 export function amplifierVolts(
-  amplifier: AmplifierUnit, inputVolts: number, amplifierCelsius: number = REFERENCE_CELSIUS,
+  amplifier: AmplifierUnit, inputVolts: number, amplifierCelsius: number = REFERENCE_CELSIUS, supplyRatio = 1,
 ): number {
-  const { virtualGround_V, gain, offset_mV, offsetDrift_uV_per_K } = amplifier;
+  const { virtualGround_V, ground, gain, offset_mV, offsetDrift_uV_per_K } = amplifier;
+  const groundVolts = virtualGround_V * (ground === 'supply' ? supplyRatio : 1);
   const offsetVolts = offset_mV * 1e-3 + offsetDrift_uV_per_K * 1e-6 * (amplifierCelsius - REFERENCE_CELSIUS);
-  return virtualGround_V + gain * (inputVolts - virtualGround_V + offsetVolts);
+  return groundVolts + gain * (inputVolts - groundVolts + offsetVolts);
 }
 
 /** Corner of the amplifier itself at its gain; infinite without a gain-bandwidth product. */
@@ -55,7 +57,7 @@ export class Amplifier {
   }
 
   surround({ amplifierCelsius, supplyRatio }: Pick<Surroundings, 'amplifierCelsius' | 'supplyRatio'>): void {
-    this.levelVolts = amplifierVolts(this.amplifier, 0, amplifierCelsius);
+    this.levelVolts = amplifierVolts(this.amplifier, 0, amplifierCelsius, supplyRatio);
     this.railRatio = supplyRatio;
   }
 

@@ -16,7 +16,7 @@ import { weighPresets, type WeighedPreset } from './presets.ts';
 import { play, type Observer, type Played } from './play.ts';
 import { settlingOf, type ChainSettling } from './settle.ts';
 import { studyFor, type Study } from './study.ts';
-import { swallowedAutomatically, swallowedOf, type Swallowed } from './swallowed.ts';
+import { driftOf, swallowedAutomatically, swallowedOf, type Swallowed } from './swallowed.ts';
 import { weigh, type Weighed } from './weigh.ts';
 
 export interface Row {
@@ -134,7 +134,7 @@ function leftOutOf(probe: Probe, { only, all }: ProveOptions): number {
 function* rowsOf(probe: Probe, tuned: Tuned, options: ProveOptions, player: ScenarioPlayer): Generator<Row> {
   const { trial, only, folder } = options;
   for (const requirement of probe.requirements) {
-    if (requirement.measure === 'swallowed' && only === undefined) yield swallowedRow(tuned, requirement.limit_A, trial);
+    if (requirement.measure === 'swallowed' && only === undefined) yield swallowedRow(probe, tuned, requirement.limit_A, trial);
   }
   for (const scenario of probe.scenarios) {
     if (only === undefined ? scenario.long && !options.all : scenario.name !== only) continue;
@@ -257,13 +257,17 @@ function eventsOf(plays: readonly Played[], supply = ''): Happened {
   return { words: nodes.join('; '), clipped: sensor + amplifier + converter > 0 };
 }
 
-/** A supply off its nominal value moves the reading when only one of sensor and reference follows it. */
+/** A supply off its nominal value moves the reading unless sensor, virtual ground and reference all follow it, or none. */
 function supplyWords(probe: Probe, scenario: Scenario): string {
   const nominal = probe.supply_V.nominal;
   const supply = scenario.supply_V ?? nominal;
-  const follows = probe.sensor.ratiometric;
-  if (supply === nominal || follows === (probe.converter.reference === 'supply')) return '';
-  return `the supply is ${supply} V in place of ${nominal} V and ${follows ? 'the sensor follows it, the reference does not' : 'the reference follows it, the sensor does not'}`;
+  const parts: [string, boolean][] = [
+    ['the sensor', probe.sensor.ratiometric], ['the virtual ground', probe.amplifier.ground === 'supply'],
+    ['the reference', probe.converter.reference === 'supply'],
+  ];
+  const named = (follows: boolean): string => parts.filter((part) => part[1] === follows).map(([name]) => name).join(' and ');
+  if (supply === nominal || named(true) === '' || named(false) === '') return '';
+  return `the supply is ${supply} V in place of ${nominal} V, followed by ${named(true)} but not by ${named(false)}`;
 }
 
 function reason(shape: string, { words, clipped }: Happened): string {
@@ -275,8 +279,8 @@ function percent(part: number, whole: number): string {
   return `${((100 * part) / whole).toPrecision(3)} %`;
 }
 
-function swallowedRow(tuned: Tuned, limitAmperes: number, trial: number): Row {
-  const list = swallowedOf(tuned.constants.design, tuned.countsPerAmpere);
+function swallowedRow(probe: Probe, tuned: Tuned, limitAmperes: number, trial: number): Row {
+  const list = swallowedOf(tuned.constants.design, tuned.countsPerAmpere, driftOf(probe));
   const value = swallowedAutomatically(list);
   const holds = value <= limitAmperes;
   const parts = list.filter((entry) => entry.by !== 'button').map((entry) => `${entry.by} ${entry.amperes.toPrecision(3)} A`);
@@ -364,7 +368,7 @@ class Gathering {
       },
       reach: tuned.constants.design.map((stage, index) => ({ stage: stage.kind, largest: this.largest[index], limit: tuned.limits[index] })),
       clampedReadings: this.clampedReadings, readings: this.readings, zeroRemoved: this.zeroRemoved,
-      swallowed: swallowedOf(tuned.constants.design, tuned.countsPerAmpere), settling: settlingOf(probe, tuned),
+      swallowed: swallowedOf(tuned.constants.design, tuned.countsPerAmpere, driftOf(probe)), settling: settlingOf(probe, tuned),
       delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe), presets: weighPresets(probe, presets),
     };
   }

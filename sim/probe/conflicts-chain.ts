@@ -138,6 +138,9 @@ function trimConflicts(
       'put { "stage": "thermometer" } ahead of it');
   }
   const temperatures = stage.table.map((point: { at_C: number }) => point.at_C);
+  if (stage.table.length === 1) {
+    note(pathTo(path, 'table'), '1 point', '2 or more points, or none', 'only the changes over temperature count');
+  }
   mustAscend(note, pathTo(path, 'table'), 'at_C', '°C', temperatures);
 }
 

@@ -61,7 +61,8 @@ const sensor = group('linear Hall sensor in the gap', {
 
 const amplifier = group('amplifier between sensor and A/D converter, around a virtual ground', {
   gain: number('voltage gain', { unit: '', min: -1e4, max: 1e4, toleranced: true }),
-  virtualGround_V: number('the voltage that the amplifier keeps in place', { unit: 'V', min: 0, max: 100, toleranced: true }),
+  ground: choice('whether the virtual ground stays or is a share of the supply', ['fixed', 'supply'], 'fixed'),
+  virtualGround_V: number('the voltage that the amplifier keeps in place, at nominal supply', { unit: 'V', min: 0, max: 100, toleranced: true }),
   offset_mV: number('input offset voltage', { unit: 'mV', min: -1000, max: 1000, toleranced: true, preset: 0 }),
   offsetDrift_uV_per_K: number('change of the input offset with temperature', { unit: 'µV/K', min: -1000, max: 1000, toleranced: true, preset: 0 }),
   gainBandwidth_MHz: number('gain-bandwidth product; left out: no limit', { unit: 'MHz', min: 0, aboveMin: true, max: 1e5, toleranced: true, preset: null }),
@@ -173,7 +174,7 @@ const stage = variant('one stage of the chain, in engineering units', 'stage', {
     highest_C: number('warmer codes mean a broken thermometer', { unit: '°C', min: -100, max: 300, preset: 125 }),
   },
   offsetTrim: {
-    table: list('offset over temperature, referred to the current; left out: the nominal drift of the hardware', group('one point', {
+    table: list('reading at zero current over temperature; its changes count, what stands at the calibration temperature is in the zero; left out: the nominal drift', group('one point', {
       at_C: number('temperature', { unit: '°C', min: -100, max: 300 }),
       offset_A: number('reading at zero current', { unit: 'A', min: -1e6, max: 1e6 }),
     }), { max: 16, optional: true }),
@@ -193,7 +194,7 @@ const stage = variant('one stage of the chain, in engineering units', 'stage', {
     suspectAfterOverload: flag('an over-range makes the zero suspect until it is taken anew or the core degaussed', true),
   },
   gainTrim: {
-    table: list('reading over truth at a temperature; left out: the nominal drift of the hardware', group('one point', {
+    table: list('reading over truth at a temperature; its changes count, what stands at the calibration temperature is in the gain of the unit; left out: the nominal drift', group('one point', {
       at_C: number('temperature', { unit: '°C', min: -100, max: 300 }),
       gain: number('reading divided by true current', { unit: '', min: 0.5, max: 2 }),
     }), { max: 16, optional: true }),
@@ -203,15 +204,15 @@ const stage = variant('one stage of the chain, in engineering units', 'stage', {
       reads_A: number('reading without this stage', { unit: 'A', min: -1e6, max: 1e6 }),
       is_A: number('true current', { unit: 'A', min: -1e6, max: 1e6 }),
     }), { min: 2, max: 64 }),
-    segments_log2: number('segments of the grid, as a power of two', { unit: '', min: 1, max: 8, integer: true, preset: 5 }),
-    beyond: choice('beyond the ends: hold the last value, or go on with the last slope', ['hold', 'slope'], 'slope'),
+    segments_log2: number('most cells of the grid, as a power of two; left out: as few as keep every point of the table within half a code', { unit: '', min: 1, max: 8, integer: true, preset: null }),
+    beyond: choice('beyond the ends: hold (from less than half a cell of the grid beyond them), or go on with the last slope', ['hold', 'slope'], 'slope'),
   },
   sections: {
     filter: choice('shape of the filter', ['low-pass', 'high-pass', 'notch'], 'low-pass'),
     corner_Hz: number('-3 dB corner; for a notch its centre', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7 }),
     order: number('order of a low-pass or high-pass (Butterworth)', { unit: '', min: 1, max: 8, integer: true, preset: 2 }),
     width_Hz: number('-3 dB width of a notch', { unit: 'Hz', min: 0, aboveMin: true, max: 1e7, preset: null }),
-    errorFeedback: number('order of the error feedback', { unit: '', min: 0, max: 2, integer: true, preset: 2 }),
+    errorFeedback: number('order of the error feedback; left out: the one that leaves no dead band and the least dither at rest', { unit: '', min: 0, max: 2, integer: true, preset: null }),
     fractionBits: number('fraction bits of the coefficients; left out: as many as fit', { unit: 'bits', min: 8, max: 30, integer: true, preset: null }),
     start,
   },

@@ -8,6 +8,7 @@ import type { SectionConstants, SectionsConstants } from '../../lib/index.ts';
 import type { StageSpecOf } from '../probe/fields.ts';
 import { butterworth, magnitudeAt, notch, type Biquad } from './filters.ts';
 import { complain, type Place } from './place.ts';
+import { quietestFeedback } from './residue.ts';
 
 const MOST_CORNER_ERROR = 0.01;
 const MOST_FRACTION_BITS = 30;
@@ -27,10 +28,11 @@ export function tuneSections(spec: StageSpecOf<'sections'>, place: Place): Secti
       return null;
     }
   }
-  return {
-    kind: 'sections', sections, primed: spec.start === 'primed' ? 1 : 0,
-    memorySamples: memoryOf(rounded, place.limit, place.countsPerCode / 2),
-  };
+  const memorySamples = memoryOf(rounded, place.limit, place.countsPerCode / 2);
+  const make = (feedback: number): SectionsConstants => ({
+    kind: 'sections', sections: sections.map((section) => ({ ...section, feedback })), primed: spec.start === 'primed' ? 1 : 0, memorySamples,
+  });
+  return spec.errorFeedback === null ? quietestFeedback(make) : make(spec.errorFeedback);
 }
 
 function designOf(spec: StageSpecOf<'sections'>, rateHz: number): Biquad[] {
@@ -59,7 +61,7 @@ function atFractionBits(biquad: Biquad, fractionBits: number, spec: StageSpecOf<
   const a1 = Math.round(biquad.a1 * unity);
   const a2 = Math.round(biquad.a2 * unity);
   const [b0, b1, b2] = numerator(biquad, spec.filter, unity, unity + a1 + a2);
-  return { fractionBits, b0, b1, b2, a1, a2, feedback: spec.errorFeedback, limit };
+  return { fractionBits, b0, b1, b2, a1, a2, feedback: 0, limit };
 }
 
 /** Numerator integers whose sum is the denominator's at DC (gain one), or zero for a high-pass. */
@@ -115,7 +117,7 @@ export function memoryOf(sections: readonly Biquad[], range: number, least: numb
   return 0;
 }
 
-function poleRadius({ a1, a2 }: Biquad): number {
+export function poleRadius({ a1, a2 }: Biquad): number {
   const root = a1 * a1 - 4 * a2;
   return root < 0 ? Math.sqrt(a2) : (Math.abs(a1) + Math.sqrt(root)) / 2;
 }

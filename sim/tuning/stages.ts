@@ -132,17 +132,52 @@ function tuneZero(spec: StageSpecOf<'zero'>, place: Place): ZeroConstants {
   };
 }
 
-/** The table as given, read at the knots of a grid of powers of two that covers it. */
-function tuneLinearise(spec: StageSpecOf<'linearise'>, place: Place): LineariseConstants {
+const MOST_SEGMENTS_LOG2 = 8;
+
+/**
+ * The table as given, read at the knots of a grid of powers of two that covers it; the smallest grid that misses no point
+ * of the table by more than half a code, or a refusal that says by how much the finest one does.
+ */
+function tuneLinearise(spec: StageSpecOf<'linearise'>, place: Place): LineariseConstants | null {
   const reads = spec.table.map((point) => point.reads_A * place.countsPerAmpere);
   const truths = spec.table.map((point) => point.is_A * place.countsPerAmpere);
-  const segments = 2 ** spec.segments_log2;
+  const sizes = spec.segments_log2 === null ? Array.from({ length: MOST_SEGMENTS_LOG2 }, (_, i) => i + 1) : [spec.segments_log2];
+  const allowed = place.countsPerCode / 2;
+  let missed = Infinity;
+  for (const segmentsLog2 of sizes) {
+    const grid = gridOf(reads, truths, segmentsLog2);
+    missed = Math.max(...reads.map((x, i) => Math.abs(onGrid(grid, x) - truths[i])));
+    if (missed <= allowed) return { kind: 'linearise', ...grid, beyond: spec.beyond === 'slope' ? 1 : 0, limit: place.roof };
+  }
+  const amperes = (counts: number): string => `${(counts / place.countsPerAmpere).toPrecision(3)} A`;
+  complain(place, spec.segments_log2 === null ? 'table' : 'segments_log2',
+    `a grid of 2^${sizes.at(-1)} segments that misses a point of the table by ${amperes(missed)}`, `at most half a code, ${amperes(allowed)}`,
+    spec.segments_log2 === null ? 'a table whose slope changes less from point to point, or a shorter one' : 'leave it out, and it is chosen');
+  return null;
+}
+
+interface Grid {
+  origin: number;
+  gridBits: number;
+  knots: number[];
+}
+
+/** Cells of a power of two, as many as cover the table: the grid ends less than half a cell beyond it on either side. */
+function gridOf(reads: readonly number[], truths: readonly number[], segmentsLog2: number): Grid {
   const span = reads[reads.length - 1] - reads[0];
-  const gridBits = Math.max(0, Math.ceil(Math.log2(span / segments)));
-  const origin = Math.round((reads[0] + reads[reads.length - 1] - segments * 2 ** gridBits) / 2);
+  const gridBits = Math.max(0, Math.ceil(Math.log2(span / 2 ** segmentsLog2)));
+  const cells = Math.max(1, Math.ceil(span / 2 ** gridBits));
+  const origin = Math.round((reads[0] + reads[reads.length - 1] - cells * 2 ** gridBits) / 2);
   const knots: number[] = [];
-  for (let knot = 0; knot <= segments; knot++) knots.push(Math.round(lineThrough(reads, truths, origin + knot * 2 ** gridBits)));
-  return { kind: 'linearise', origin, gridBits, knots, beyond: spec.beyond === 'slope' ? 1 : 0, limit: place.roof };
+  for (let knot = 0; knot <= cells; knot++) knots.push(Math.round(lineThrough(reads, truths, origin + knot * 2 ** gridBits)));
+  return { origin, gridBits, knots };
+}
+
+/** What the stage makes of an input within its grid, without rounding. */
+function onGrid({ origin, gridBits, knots }: Grid, x: number): number {
+  const position = (x - origin) / 2 ** gridBits;
+  const segment = Math.min(knots.length - 2, Math.max(0, Math.floor(position)));
+  return knots[segment] + (knots[segment + 1] - knots[segment]) * (position - segment);
 }
 
 function lineThrough(xs: readonly number[], ys: readonly number[], x: number): number {

@@ -1,6 +1,6 @@
 /**
  * The unit record: from nominal parts, or from what the factory measured on one unit at listed points. Tables over
- * temperature are those of the probe file, or the nominal drift of the hardware, with 16 knots between the
+ * temperature have the points of the probe file, or for the nominal drift of the hardware 16 knots between the
  * thermometer's ends; without a thermometer stage they have one knot.
  */
 import { UNIT_KNOTS, UNIT_VERSION, UNITY_Q24, unitCrc, type UnitConstants } from '../../lib/index.ts';
@@ -27,16 +27,16 @@ export function tuneUnit(probe: Probe, midCode: number, guardBits: number, measu
   const sign = (Math.sign(nominal) || 1) * probe.direction;
   const middle = probe.sensor.bias === 'steady' ? midCode : 0;
   const restCounts = Math.round(sign * (measured.zeroCode - middle) * countsPerCode);
-  const celsius = knotsOf(probe);
-  const gains = celsius.map((t) => gainAt(probe, t));
+  const offsetCelsius = knotsOf(probe, 'offsetTrim');
+  const gainCelsius = knotsOf(probe, 'gainTrim');
   const gainQ24 = Math.round((nominal / measured.codesPerAmpere / gainAt(probe, measured.celsius)) * UNITY_Q24);
-  const offsets = celsius.map((t) => offsetAt(probe, t) - offsetAt(probe, measured.celsius));
+  const offsets = offsetCelsius.map((t) => offsetAt(probe, t) - offsetAt(probe, measured.celsius));
   // without a zero stage the offset trim alone has to take out the rest
   const base = probe.chain.some((spec) => spec.stage === 'zero') ? 0 : restCounts;
   const unit: UnitConstants = {
     version: UNIT_VERSION, sign, factoryZero: restCounts, gainQ24,
-    offsetTemperatures: celsius.map(inQ8), offsets: offsets.map((codes) => Math.round(base + sign * codes * countsPerCode)),
-    gainTemperatures: celsius.map(inQ8), gainsQ24: gains.map((gain) => Math.round(gain * UNITY_Q24)), crc: 0,
+    offsetTemperatures: offsetCelsius.map(inQ8), offsets: offsets.map((codes) => Math.round(base + sign * codes * countsPerCode)),
+    gainTemperatures: gainCelsius.map(inQ8), gainsQ24: gainCelsius.map((t) => Math.round(gainAt(probe, t) * UNITY_Q24)), crc: 0,
   };
   unit.crc = unitCrc(unit);
   return unit;
@@ -46,9 +46,12 @@ function inQ8(celsius: number): number {
   return Math.round(celsius * 256);
 }
 
-function knotsOf(probe: Probe): number[] {
+/** The points of the trim's own table, or even ones between the ends of the thermometer; one without a thermometer. */
+function knotsOf(probe: Probe, trim: 'offsetTrim' | 'gainTrim'): number[] {
   const thermometer = probe.chain.find((spec): spec is StageSpecOf<'thermometer'> => spec.stage === 'thermometer');
   if (thermometer === undefined) return [25];
+  const spec = probe.chain.find((stage): stage is StageSpecOf<'offsetTrim' | 'gainTrim'> => stage.stage === trim);
+  if (spec !== undefined && spec.table.length > 1) return spec.table.map(({ at_C }: { at_C: number }) => at_C);
   const { lowest_C, highest_C } = thermometer;
   return Array.from({ length: UNIT_KNOTS }, (_, knot) => lowest_C + ((highest_C - lowest_C) * knot) / (UNIT_KNOTS - 1));
 }

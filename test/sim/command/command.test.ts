@@ -131,6 +131,36 @@ describe('constants', () => {
   });
 });
 
+describe('code in a probe file', () => {
+  test.each([
+    ['throws.mjs', '() => { throw new TypeError("no such word"); }', /chain\[1\]\.make: found an error: no such word/],
+    ['empty.mjs', '() => ({})', /chain\[1\]\.make: found something that is no stage/],
+  ])('that fails is told with its place, exit 2: %s', (name, make, message) => {
+    writeFileSync(join(folder, name), OWN_STAGE.replace('(words) => new Halve(words)', make));
+    const { status, err } = hallproof(folder, 'prove', name);
+    expect(status).toBe(2);
+    expect(err).toMatch(message);
+    expect(err).not.toContain('    at ');
+  });
+});
+
+describe('a recorded current', () => {
+  test('with a bad line is refused before the first row', () => {
+    writeFileSync(join(folder, 'bad.csv'), `time_s,current_A\n${Array.from({ length: 30 }, (_, i) => `${i * 0.001},${i === 20 ? 'x' : 1}`).join('\n')}\n`);
+    writeFileSync(join(folder, 'recorded.json'), JSON.stringify(quietProbe({
+      scenarios: [
+        { name: 'steady', current: { shape: 'dc', level_A: 10 }, duration_ms: 10 },
+        { name: 'file', current: { shape: 'file', path: 'bad.csv' }, duration_ms: 25 },
+      ],
+      requirements: [{ measure: 'reading', scenario: 'steady', amperes: 1 }, { measure: 'reading', scenario: 'file', amperes: 1 }],
+    })));
+    const { status, out, err } = hallproof(folder, 'prove', 'recorded.json');
+    expect(status).toBe(2);
+    expect(out).toBe('');
+    expect(err).toMatch(/bad\.csv, line 22/);
+  });
+});
+
 describe('new', () => {
   test('writes a starter that holds, and never replaces a file', () => {
     expect(hallproof(folder, 'new', 'mine.mjs').status).toBe(0);
@@ -173,7 +203,7 @@ describe('read', () => {
 
   test.each([
     ['fraction.csv', ['code', '1', '1.5'], /line 3.*column "code".*found 1\.5/],
-    ['large.csv', ['code', '65536'], /line 2.*found 65536, allowed a whole number from -32768 to 65535/],
+    ['large.csv', ['code', '65536'], /line 2.*found 65536, allowed a whole number from 0 to 65535/],
     ['text.csv', ['code', '1', 'n\/a'], /line 3.*"n\/a" is not a number/],
     ['nocode.csv', ['volts,amperes', '1,2'], /no column "code"; there are "volts", "amperes"/],
   ])('exit 2 with the line that is wrong, and nothing written: %s', (name, lines, message) => {
@@ -182,6 +212,35 @@ describe('read', () => {
     expect(status).toBe(2);
     expect(err).toMatch(message);
     expect(existsSync(join(folder, `${name}.out`))).toBe(false);
+  });
+
+  test('a reference in mA is one in amperes divided by a thousand; other units are refused', () => {
+    codes('milli.csv', ['code,reference (mA)', `${MID + 1000},${(1e6 * QUIET_CODE_AMPERES).toFixed(3)}`]);
+    expect(hallproof(folder, 'read', 'quiet.json', 'milli.csv').err).toMatch(/^holds: worst error/m);
+    codes('volts.csv', ['code,reference (V)', `${MID},0`]);
+    expect(hallproof(folder, 'read', 'quiet.json', 'volts.csv')).toMatchObject({ status: 2 });
+  });
+
+  test('what cannot be judged does not pass: no accuracy in the probe file, or no reading left', () => {
+    writeFileSync(join(folder, 'noaccuracy.json'), JSON.stringify(quietProbe({ requirements: [{ measure: 'noise', scenario: 'steady', limit_A: 1 }] })));
+    const none = hallproof(folder, 'read', 'noaccuracy.json', 'referenced.csv');
+    expect(none.status).toBe(2);
+    expect(none.err).toContain('no requirement "reading" or "mean" to judge by');
+    writeFileSync(join(folder, 'railed.json'), JSON.stringify(quietProbe({ chain: [{ stage: 'intake' }, { stage: 'overRange' }, { stage: 'scale' }] })));
+    codes('rail.csv', ['code,reference_A', '65535,26', '65535,26']);
+    const railed = hallproof(folder, 'read', 'railed.json', 'rail.csv');
+    expect(railed.status).toBe(1);
+    expect(railed.err).toContain('not judged, because no reading is left that is not flagged');
+  });
+
+  test('columns that it does not know are named', () => {
+    codes('misspelt.csv', ['code,refrence_A', `${MID},0`]);
+    expect(hallproof(folder, 'read', 'quiet.json', 'misspelt.csv').err).toContain('not used: "refrence_A"');
+  });
+
+  test('a code that the format cannot give is refused', () => {
+    codes('negative.csv', ['code', '-5']);
+    expect(hallproof(folder, 'read', 'quiet.json', 'negative.csv')).toMatchObject({ status: 2 });
   });
 
   test('events and temperature travel with the codes; how the record is long does not matter', () => {

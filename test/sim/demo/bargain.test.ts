@@ -49,6 +49,6 @@ describe.each([0, 1, 2])('the bargain probe, trial %i', (trial) => {
   test('a sensor that follows the supply against a reference that does not: off by a steady current', () => {
     const row = rowOf('mean/fast@tired battery');
     expect(row.holds).toBe(false);
-    expect(row.because).toContain('the supply is 4.8 V in place of 5 V and the sensor follows it, the reference does not');
+    expect(row.because).toContain('the supply is 4.8 V in place of 5 V, followed by the sensor but not by the virtual ground and the reference');
   });
 });

@@ -44,6 +44,62 @@ describe('a reading', () => {
   });
 });
 
+describe('a supply that is low', () => {
+  const reading = (change: Given) => rowOf(quietProbe({
+    scenarios: [{ ...STEADY[0], supply_V: 4.5 }], requirements: [{ measure: 'reading', scenario: 'steady', amperes: 0.1 }], ...change,
+  }), 'reading@steady');
+  const sensor = { sensitivity_mV_per_mT: 50, rest_V: 2.5, bandwidth_kHz: 2000, ratiometric: true };
+  const amplifier = { gain: 2, virtualGround_V: 2.5, bandwidth_kHz: 2000 };
+  const converter = { bits: 16, rate_kHz: 40, reference_V: 5, reference: 'supply' };
+
+  test('cancels where sensor, virtual ground and reference are all shares of it', () => {
+    expect(Math.abs(reading({ sensor, amplifier: { ...amplifier, ground: 'supply' }, converter }).value!)).toBeLessThan(QUIET_CODE_AMPERES);
+  });
+
+  test('is named where one of them is not', () => {
+    const row = reading({ sensor, amplifier, converter });
+    // the sensor rests 0.25 V lower and the ground does not: 2 * 2.25 - 2.5 = 2.0 V of 4.5 V, where 2.25 V is zero
+    expect(row.value).toBeCloseTo(-0.25 / (2 * 0.9 * 50 * (4e-4 * Math.PI / (2 + 80 / 2200))), 2);
+    expect(row.because).toContain('followed by the sensor and the reference but not by the virtual ground');
+  });
+});
+
+describe('what is left out of an error', () => {
+  const chain = [INTAKE, { stage: 'overRange', hold_ms: 0 }, { stage: 'scale' }];
+  // a triangle of currents would do; a sine of twice the converter's range is beyond it for two thirds of the time
+  const beyond = (peak_A: number) => rowOf(quietProbe({
+    chain, scenarios: [{ name: 'way', current: { shape: 'sine', peak_A, frequency_Hz: 50 }, duration_ms: 200 }],
+    requirements: [{ measure: 'reading', scenario: 'way', percentOfRange: 5 }],
+  }), 'reading@way');
+
+  test('is told in the row, as the share of the readings that were flagged', () => {
+    // the code range ends at 2.5 V / 61.7 mV/A = 40.5 A: a sine of 45 A is beyond it for acos(40.5/45) / (pi/2) = 28.7 %
+    const row = beyond(45);
+    const end = 32767.5 * QUIET_CODE_AMPERES;
+    // 800 samples a period: two edges of each half wave, one sample each
+    expect(Math.abs(row.leftOut - Math.acos(end / 45) / (Math.PI / 2))).toBeLessThan(4 / 800);
+    expect(row.holds).toBe(true);
+    expect(row.where).toMatch(/28\.\d % flagged and left out/);
+  });
+
+  test('must not be more than half: then nothing has been shown', () => {
+    const row = beyond(200);
+    expect(row.leftOut).toBeGreaterThan(0.5);
+    expect(row.holds).toBe(false);
+    expect(row.because).toContain('the few that are left prove little');
+  });
+
+  test('windows that timed out without a cycle are not measured', () => {
+    const row = rowOf(quietProbe({
+      chain: [INTAKE, { stage: 'scale' }, { stage: 'meter', window_ms: 100, cycles: 2, hysteresis_A: 25 }],
+      scenarios: [{ name: 'way', current: { shape: 'sine', peak_A: 20, frequency_Hz: 50 }, duration_ms: 500 }],
+      requirements: [{ measure: 'trueRms', scenario: 'way', amperes: 1 }],
+    }), 'trueRms@way');
+    expect(row).toMatchObject({ holds: false, value: null });
+    expect(row.because).toContain('timed out without whole cycles');
+  });
+});
+
 describe('the reason under a row that falls short', () => {
   const requirements = [{ measure: 'reading', scenario: 'way', amperes: 0.01 }];
   const staircase = { shape: 'staircase', levels_A: [0, 5, 10, 20], hold_ms: 20 };
@@ -179,10 +235,30 @@ describe('swallowed', () => {
       }, { stage: 'scale' }],
     }));
     const { constants, countsPerAmpere } = tune(probe);
-    const list = swallowedOf(constants.design, countsPerAmpere);
+    const list = swallowedOf(constants.design, countsPerAmpere, 0);
     expect(list.map(({ by }) => by)).toEqual(['start-up', 'tracking', 'button']);
-    // windows are whole counts: half a count each
-    expect(Math.abs(swallowedAutomatically(list) - 0.7)).toBeLessThan(1 / countsPerAmpere);
+    // both are rounded down to whole counts
+    expect(Math.abs(swallowedAutomatically(list) - 0.7)).toBeLessThan(2 / countsPerAmpere);
+  });
+
+  test('a zero that drifts lets a larger current be swallowed, and the row says so', () => {
+    const given = quietProbe({
+      sensor: { sensitivity_mV_per_mT: 50, rest_V: 2.5, restDrift_mV_per_K: 0.2, bandwidth_kHz: 2000 },
+      chain: [INTAKE, { stage: 'zero', atStart: true, settle_ms: 1, mean_ms: 1, span_A: 1, window_A: 0.5 }, { stage: 'scale' }],
+      scenarios: [{ name: 'hot', current: { shape: 'dc', level_A: -0.8 }, duration_ms: 20, judgeFrom_ms: 5, temperature_C: 75 }],
+      requirements: [{ measure: 'reading', scenario: 'hot', amperes: 1 }, { measure: 'swallowed', limit_A: 1 }],
+    });
+    // 50 K * 0.2 mV/K over 30.85 mV/A = 0.324 A of drift: it hides 0.8 A within a window of 0.5 A
+    expect(rowOf(given, 'reading@hot').value).toBeCloseTo(0.8, 2);
+    expect(rowOf(given, 'swallowed').value).toBeCloseTo(0.5 + 0.324, 2);
+  });
+
+  test('a window as large as the limit does not exceed it', () => {
+    const row = rowOf(quietProbe({
+      chain: [INTAKE, { stage: 'zero', atStart: true, mean_ms: 1, span_A: 1, window_A: 0.5 }, { stage: 'scale' }],
+      requirements: [{ measure: 'reading', scenario: 'steady', amperes: 1 }, { measure: 'swallowed', limit_A: 0.5 }],
+    }), 'swallowed');
+    expect(row.holds).toBe(true);
   });
 
   test('a zero at start-up really takes a direct current as large as its window, and refuses a larger one', () => {

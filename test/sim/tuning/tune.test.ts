@@ -1,12 +1,13 @@
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
-import { Block, Chain, checkConstants, type SectionsConstants } from '../../../lib/index.ts';
+import { Block, Chain, checkConstants, CLAMPED, type SectionsConstants } from '../../../lib/index.ts';
 import { nominalTransfer } from '../../../sim/hardware/transfer.ts';
 import { ProbeError } from '../../../sim/probe/problem.ts';
 import { calibrate } from '../../../sim/tuning/calibrate.ts';
+import { residueOf } from '../../../sim/tuning/residue.ts';
 import { tune, type Tuned } from '../../../sim/tuning/tune.ts';
 import { memoryOf, realOf } from '../../../sim/tuning/sections.ts';
-import { demoData, probeOf, quietProbe, type Given } from '../probes.ts';
+import { demoData, probeOf, quietProbe, QUIET_CODE_AMPERES, type Given } from '../probes.ts';
 
 function tuned(chain: Given[], change: Given = {}): Tuned {
   return tune(probeOf(quietProbe({ chain, ...change })));
@@ -62,7 +63,7 @@ describe('tuning', () => {
 
   test.each(['low-pass', 'notch'])('the integers of a %s have a DC gain of exactly one', (filter) => {
     fc.assert(fc.property(fc.double({ min: 20, max: 18000, noNaN: true }), fc.integer({ min: 1, max: 8 }), (corner_Hz, order) => {
-      for (const s of sectionsOf(tuned([INTAKE, { stage: 'sections', filter, corner_Hz, ...(filter === 'notch' ? { width_Hz: 50 } : { order }) }, { stage: 'scale' }])).sections) {
+      for (const s of sectionsOf(tuned([INTAKE, { stage: 'sections', filter, corner_Hz, errorFeedback: 2, ...(filter === 'notch' ? { width_Hz: 50 } : { order }) }, { stage: 'scale' }])).sections) {
         expect(s.b0 + s.b1 + s.b2).toBe(2 ** s.fractionBits + s.a1 + s.a2);
       }
     }), { numRuns: 200 });
@@ -70,7 +71,7 @@ describe('tuning', () => {
 
   test('the integers of a high-pass have a DC gain of exactly zero', () => {
     fc.assert(fc.property(fc.double({ min: 20, max: 18000, noNaN: true }), fc.integer({ min: 1, max: 8 }), (corner_Hz, order) => {
-      for (const s of sectionsOf(tuned([INTAKE, { stage: 'sections', filter: 'high-pass', corner_Hz, order }, { stage: 'scale' }])).sections) {
+      for (const s of sectionsOf(tuned([INTAKE, { stage: 'sections', filter: 'high-pass', corner_Hz, order, errorFeedback: 2 }, { stage: 'scale' }])).sections) {
         expect(s.b0 + s.b1 + s.b2).toBe(0);
       }
     }), { numRuns: 200 });
@@ -151,6 +152,112 @@ describe('tuning', () => {
       const drift = 1 + 350e-6 * (23 - 25);
       expect(Math.abs(residual * (1 / drift) - 1)).toBeLessThan(1e-3);
     }
+  });
+});
+
+/** The chain of the quiet probe with a stage more, fed one steady code; in amperes. */
+function steadyReading(stage: Given, amperes: number): { amperes: number; status: number } {
+  const probe = probeOf(quietProbe({ chain: [INTAKE, stage, { stage: 'scale' }] }));
+  const result = tune(probe);
+  const block = new Block(1);
+  block.count = 1;
+  block.value[0] = Math.round(32768 + amperes * nominalTransfer(probe).codesPerAmpere);
+  new Chain(result.constants).process(block);
+  return { amperes: block.value[0] / result.readingsPerAmpere, status: block.status[0] };
+}
+
+describe('error feedback', () => {
+  const at = (corner_Hz: number, errorFeedback: number | undefined) => sectionsOf(tuned(
+    [{ stage: 'intake', guardBits: 4 }, { stage: 'sections', corner_Hz, order: 2, ...(errorFeedback === undefined ? {} : { errorFeedback }) }, { stage: 'scale' }],
+  ));
+
+  test('without it a constant of 5 counts dies in the dead band of a corner at a hundredth of the rate; with order 2 it comes out', () => {
+    expect(residueOf(at(400, 0)).meanError).toBeGreaterThanOrEqual(1);
+    expect(residueOf(at(400, 2)).meanError).toBeLessThan(0.01);
+  });
+
+  test('left out, the order is one without a dead band, and no other such order leaves less dither', () => {
+    for (const corner of [4, 40, 400, 4000, 12000, 17000]) {
+      const chosen = residueOf(at(corner, undefined));
+      expect(chosen.meanError).toBeLessThan(0.5);
+      for (const order of [0, 1, 2]) {
+        const other = residueOf(at(corner, order));
+        if (other.meanError < 0.5) expect(other.dither).toBeGreaterThanOrEqual(chosen.dither);
+      }
+    }
+  });
+
+  test('at corners up to a tenth of the rate one count of dither is the most', () => {
+    for (const corner of [4, 40, 400, 4000]) expect(residueOf(at(corner, undefined)).dither).toBeLessThanOrEqual(1);
+  });
+});
+
+describe('a table for linearise', () => {
+  const table = [{ reads_A: -11, is_A: -11.5 }, { reads_A: 3, is_A: 3 }, { reads_A: 11, is_A: 11.5 }];
+  const code = QUIET_CODE_AMPERES;
+
+  test('is met at each of its points within a code', () => {
+    for (const { reads_A, is_A } of table) {
+      // half a code where the grid misses the point, and one where the code next to the point is fed, at slopes near 1
+      expect(Math.abs(steadyReading({ stage: 'linearise', table }, reads_A).amperes - is_A)).toBeLessThan(1.2 * code);
+    }
+  });
+
+  test('held, it gives the end value beyond its end, clamped and flagged; with the slope it goes on', () => {
+    const held = steadyReading({ stage: 'linearise', table, beyond: 'hold' }, 15);
+    // the grid ends less than half of its cells of 22 A / 256 at the most beyond the table
+    expect(Math.abs(held.amperes - 11.5)).toBeLessThan(0.5 * (22 / 128) * (8.5 / 8) + code);
+    expect(held.status & CLAMPED).toBe(CLAMPED);
+    const on = steadyReading({ stage: 'linearise', table, beyond: 'slope' }, 15);
+    expect(Math.abs(on.amperes - (11.5 + (4 * 8.5) / 8))).toBeLessThan(3 * code);
+    expect(on.status & CLAMPED).toBe(0);
+  });
+
+  test('that no grid can follow is refused with what it misses', () => {
+    const kinked = [{ reads_A: -11, is_A: -11 }, { reads_A: 0.001, is_A: -9 }, { reads_A: 0.02, is_A: 9 }, { reads_A: 11, is_A: 11 }];
+    const error = refusal([INTAKE, { stage: 'linearise', table: kinked }, { stage: 'scale' }]);
+    expect(error.problems[0]).toMatchObject({ path: 'chain[1].table' });
+    expect(error.problems[0].found).toContain('misses a point of the table by');
+  });
+});
+
+describe('tables over temperature', () => {
+  const thermometer = { element: 'linear', slope_mV_per_K: 10, at25_V: 0.75, bits: 16 };
+
+  test('keep their own points as knots, and only their changes from the calibration temperature count', () => {
+    const result = tuned([
+      INTAKE, { stage: 'thermometer' },
+      { stage: 'offsetTrim', table: [{ at_C: -7, offset_A: 0.4 }, { at_C: 25, offset_A: 0.5 }, { at_C: 61, offset_A: 0.8 }] },
+      { stage: 'zero', span_A: 1, window_A: 1 }, { stage: 'gainTrim', table: [{ at_C: 0, gain: 1.1 }, { at_C: 50, gain: 1.2 }] }, { stage: 'scale' },
+    ], { thermometer });
+    const { unit } = result.constants;
+    expect(unit.offsetTemperatures).toEqual([-7 * 256, 25 * 256, 61 * 256]);
+    [-0.1, 0, 0.3].forEach((amperes, i) => expect(Math.abs(unit.offsets[i] - amperes * result.countsPerAmpere)).toBeLessThanOrEqual(0.5));
+    expect(unit.gainTemperatures).toEqual([0, 50 * 256]);
+    // at 25 degrees the unit's gain makes up for the table's 1.15: together 1
+    const together = (unit.gainQ24 / 2 ** 24) * ((unit.gainsQ24[0] + unit.gainsQ24[1]) / 2 / 2 ** 24);
+    expect(Math.abs(together - (1.15 * (1 / 1.1 + 1 / 1.2)) / 2)).toBeLessThan(1e-6);
+  });
+
+  test('of one point are refused: it would do nothing', () => {
+    const error = refusal([INTAKE, { stage: 'thermometer' }, { stage: 'gainTrim', table: [{ at_C: 25, gain: 1.1 }] }, { stage: 'scale' }], { thermometer });
+    expect(error.problems[0]).toMatchObject({ path: 'chain[2].table', found: '1 point' });
+  });
+});
+
+describe('a calibration', () => {
+  test('that clips is refused', () => {
+    const probe = probeOf(quietProbe({ calibration: { at_C: 25, span_A: 60, samples: 64 } }));
+    expect(() => calibrate(probe, { seed: 1, trial: 0, folder: '.' })).toThrow(/clipping at 60 A/);
+  });
+
+  test('sees noise of its own at each point: the gain scatters as the noise says', () => {
+    const probe = probeOf(quietProbe({ converter: { bits: 16, rate_kHz: 40, reference_V: 5, noise_codes: 200 }, calibration: { at_C: 25, span_A: 10, samples: 16 } }));
+    const nominal = nominalTransfer(probe).codesPerAmpere;
+    const errors = Array.from({ length: 200 }, (_, seed) => calibrate(probe, { seed, trial: 1, folder: '.' }).codesPerAmpere - nominal);
+    const deviation = Math.sqrt(errors.reduce((sum, error) => sum + error * error, 0) / errors.length);
+    // two means of 16 codes: 200 / sqrt(16) * sqrt(2) over 20 A; 200 estimates: 1 / sqrt(400) = 5 %, four of them
+    expect(Math.abs(deviation / ((200 / 4) * Math.SQRT2 / 20) - 1)).toBeLessThan(0.2);
   });
 });
 
