@@ -54,7 +54,11 @@ function withRegions(text: string): string {
 function demoVerdict(): string {
   const { probe, folder } = demoProbe();
   const lines: string[] = [TABLE_HEAD];
-  for (const row of prove(probe, { seed: 1, trial: 1, folder })) lines.push(...rowLines(row, paintFor({})));
+  const shown = new Set<string>();
+  for (const row of prove(probe, { seed: 1, trial: 1, folder })) {
+    if (!shown.has(row.measure)) lines.push(...rowLines(row, paintFor({})));
+    shown.add(row.measure);
+  }
   return fenced('', lines.join('\n'));
 }
 

@@ -63,6 +63,22 @@ export const DOOR_SCENARIOS = [
     name: 'long rest', about: 'no current, for the Allan deviation', current: { shape: 'dc', level_A: 0 },
     duration_ms: 6000, judgeFrom_ms: 100,
   },
+  {
+    name: 'slow sine', about: 'for gain, phase, distortion and effective bits of the reading',
+    current: { shape: 'sine', peak_A: 25, frequency_Hz: 5 }, duration_ms: 1600, judgeFrom_ms: 200,
+  },
+  {
+    name: 'dimmed lamp', about: 'phase-cut mains', current: { shape: 'phaseCut', peak_A: 14, frequency_Hz: 50, firing_deg: 90, edge_us: 100 },
+    duration_ms: 1600, judgeFrom_ms: 300,
+  },
+  {
+    name: 'distorted mains', about: 'the rectifiers of the depot',
+    current: { shape: 'harmonics', peak_A: 14, frequency_Hz: 50, percents: [0, 20, 0, 15, 0, 10] }, duration_ms: 1600, judgeFrom_ms: 300,
+  },
+  {
+    name: 'small steady current for ten minutes', about: 'the lamp stays on while the probe wanders', long: true,
+    current: { shape: 'step', from_A: 0, to_A: 0.25, at_ms: 100, edge_us: 200 }, duration_ms: 600_000, judgeFrom_ms: 250,
+  },
 ];
 
 export const DOOR_REQUIREMENTS = [
@@ -81,4 +97,16 @@ export const DOOR_REQUIREMENTS = [
   { measure: 'reading', scenario: 'falling supply', percentOfReading: 1, percentOfRange: 0.5 },
   { measure: 'zeroOverTemperature', lowest_C: -10, highest_C: 40, limit_A: 0.1 },
   { measure: 'zeroOverTime', scenario: 'long rest', tau_s: 1, limit_A: 0.01 },
+  { measure: 'gain', scenario: 'slow sine', limit_percent: 4 },
+  { measure: 'phase', scenario: 'slow sine', limit_deg: 2 },
+  { measure: 'sinad', scenario: 'slow sine', atLeast_dB: 45 },
+  { measure: 'effectiveBits', scenario: 'slow sine', atLeast_bits: 7 },
+  { measure: 'trueRms', scenario: 'dimmed lamp', meter: 'mains', percentOfReading: 3, percentOfRange: 0.3 },
+  { measure: 'trueRms', scenario: 'distorted mains', meter: 'mains', percentOfReading: 1.5, percentOfRange: 0.5 },
+  { measure: 'reading', scenario: 'small steady current for ten minutes', amperes: 0.1 },
+  { measure: 'bandwidth', atLeast_Hz: 15, peak_A: 10 },
+  {
+    measure: 'band', meter: 'mains', from_Hz: 45, to_Hz: 65, points: 3, peak_A: 20, lowest_C: -10, highest_C: 40,
+    percentOfReading: 1.5, percentOfRange: 0.3,
+  },
 ];
