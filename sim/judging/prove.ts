@@ -8,6 +8,7 @@ import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
 import type { Preset } from '../probe/validate.ts';
 import { openCurrent } from '../current/source.ts';
 import { gridFactorOf } from '../hardware/grid.ts';
+import { nominalTransfer } from '../hardware/transfer.ts';
 import { countTolerances } from '../hardware/draw.ts';
 import { calibrate } from '../tuning/calibrate.ts';
 import { tune, type Tuned } from '../tuning/tune.ts';
@@ -369,7 +370,7 @@ class Gathering {
       reach: tuned.constants.design.map((stage, index) => ({ stage: stage.kind, largest: this.largest[index], limit: tuned.limits[index] })),
       clampedReadings: this.clampedReadings, readings: this.readings, zeroRemoved: this.zeroRemoved,
       swallowed: swallowedOf(tuned.constants.design, tuned.countsPerAmpere, driftOf(probe)), settling: settlingOf(probe, tuned),
-      delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe), presets: weighPresets(probe, presets),
+      delayMs: tuned.delaySamples / probe.converter.rate_kHz, warnings: warningsOf(probe, tuned), presets: weighPresets(probe, presets),
     };
   }
 }
@@ -385,7 +386,31 @@ class Tally {
   }
 }
 
-function warningsOf(probe: Probe): string[] {
+function warningsOf(probe: Probe, tuned: Tuned): string[] {
   const { warning } = gridFactorOf(probe);
-  return warning === null ? [] : [warning];
+  return [warning, rangeWarning(probe, tuned), railWarning(probe, tuned)].filter((text) => text !== null);
+}
+
+/** Whatever the scenarios ask, the converter must have codes for the nominal range. */
+function rangeWarning(probe: Probe, tuned: Tuned): string | null {
+  const end = tuned.limits[0] / tuned.countsPerAmpere;
+  return probe.range_A <= end ? null
+    : `range_A: ${probe.range_A} A is beyond the last code of the converter, ${end.toPrecision(4)} A: nothing out there can be read`;
+}
+
+/** End codes that the amplifier cannot reach are never met: over-range is then told by other limits only. */
+function railWarning(probe: Probe, tuned: Tuned): string | null {
+  const { design } = tuned.constants;
+  const intake = design[0];
+  const watch = design.find((stage) => stage.kind === 'overRange');
+  if (intake.kind !== 'intake' || watch?.kind !== 'overRange') return null;
+  const { codesPerVolt, restCode, amplifierRestVolts } = nominalTransfer(probe);
+  const codeAt = (volts: number): number => restCode + (volts - amplifierRestVolts) * codesPerVolt;
+  const high = watch.highLimit / 2 ** intake.guardBits + intake.midCode;
+  const low = watch.lowLimit / 2 ** intake.guardBits + intake.midCode;
+  const { railHigh_V, railLow_V } = probe.amplifier;
+  const lost: string[] = [];
+  if (codeAt(railHigh_V.nominal) < high) lost.push(`highCode ${high} (the amplifier ends at code ${Math.floor(codeAt(railHigh_V.nominal))})`);
+  if (codeAt(railLow_V.nominal) > low) lost.push(`lowCode ${low} (the amplifier ends at code ${Math.ceil(codeAt(railLow_V.nominal))})`);
+  return lost.length === 0 ? null : `overRange: ${lost.join(' and ')} can never be met`;
 }

@@ -67,6 +67,10 @@ export const EDITS: readonly Edit[] = [
   edit('trim', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, now);', 'offset = interpolate(unit.offsetTemperatures, unit.offsets, temperature[0]);'),
   edit('trim', 'const y = shiftRound(multiply(value[i], gainQ24), 24);', 'const y = Math.floor(multiply(value[i], gainQ24) / 16777216);'),
   edit('trim', 'gainQ24 = shiftRound(multiply(unit.gainQ24, interpolate(unit.gainTemperatures, unit.gainsQ24, now)), 24);', 'gainQ24 = interpolate(unit.gainTemperatures, unit.gainsQ24, now);'),
+  edit('trim', "if (flow.zeroed) problems.add('order', 'behind zero', 'ahead of zero', 'the zero has already removed this offset');", ''),
+  edit('trim', 'state[2] = offset;', 'state[2] = 0;'),
+  edit('trim', 'state[2] = gainQ24;', 'state[2] = 0;'),
+  edit('trim', "problems.width('|x| * gain', flow.limit * gainQ24 + 8388608, 'use fewer guard bits');", ''),
   edit('unit', 'crc ^= (words[i] >> (8 * byte)) & 255;', 'crc ^= (words[i] >> (8 * (3 - byte))) & 255;'),
   edit('unit', 'if (unitCrc(unit) !== unit.crc) throw', 'if (unitCrc(unit) === 0) throw'),
 
@@ -115,5 +119,8 @@ export const EDITS: readonly Edit[] = [
   edit('flow', "problems.add('output', limit, 'at most 2147483647', remedy);", ''),
   edit('problems', 'if (reach < 9007199254740992) return true;', 'if (reach < 18014398509481984) return true;'),
   edit('custom', '&& makers[i].version === constants.version', ''),
+  edit('custom', "if (c.name.length === 0) problems.add('name', c.name, 'a name', 'name the stage');", ''),
+  edit('custom', "flow.give(problems, c.limit, 'lower the limit');", ''),
+  edit('custom', 'return makers[i].make(constants.words, unit);', 'return makers[0].make(constants.words, unit);'),
   edit('chain', 'for (let i = 0; i < this.stages.length; i++) powerCycle(this.stages[i]);', 'for (let i = 1; i < this.stages.length - 2; i++) powerCycle(this.stages[i]);'),
 ];

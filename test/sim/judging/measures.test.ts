@@ -272,6 +272,25 @@ describe('swallowed', () => {
   });
 });
 
+describe('a warning', () => {
+  // the grid of the quiet probe is coarse on purpose, and that is told as well
+  const warningsOf = (change: Given) => verdictOf(quietProbe(change)).summary.warnings.filter((text) => !text.startsWith('gridFactor'));
+
+  test('tells a range that the converter has no codes for', () => {
+    expect(warningsOf({ range_A: 1000 }).join()).toMatch(/range_A: 1000 A is beyond the last code of the converter, 40\.5\d A/);
+    expect(warningsOf({ range_A: 40 })).toEqual([]);
+  });
+
+  test('tells over-range codes that the amplifier cannot reach', () => {
+    const amplifier = { gain: 2, virtualGround_V: 2.5, bandwidth_kHz: 2000, railLow_V: 0.5, railHigh_V: 4 };
+    const chain = (more: Given) => [INTAKE, { stage: 'overRange', ...more }, { stage: 'scale' }];
+    // 4 V of 5 V in 16 bits is code 52428.8, 0.5 V is 6553.6
+    const [text] = warningsOf({ amplifier, chain: chain({}) });
+    expect(text).toContain('highCode 65535 (the amplifier ends at code 52428) and lowCode 0 (the amplifier ends at code 6554)');
+    expect(warningsOf({ amplifier, chain: chain({ highCode: 52428, lowCode: 6554 }) })).toEqual([]);
+  });
+});
+
 describe('the verdict', () => {
   test('the same seed and trial give the same rows; another seed does not', () => {
     const one = verdictOf(demoData(), { trial: 2, only: 'rest' });
