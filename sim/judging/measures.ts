@@ -3,7 +3,7 @@
  * that are not judged, are left out of the error (they are counted elsewhere). A measure that its scenario cannot support
  * says why instead of guessing.
  */
-import type { Probe, Requirement, Scenario } from '../probe/fields.ts';
+import type { Probe, Requirement, Scenario, StageSpecOf } from '../probe/fields.ts';
 import { ErrorShape } from './errorshape.ts';
 import { longestPeriodSeconds } from './period.ts';
 import { UNUSABLE, type Observer, type Readings, type Record } from './play.ts';
@@ -69,16 +69,16 @@ export function allowed(allowance: Allowance, trueAmperes: number, rangeAmperes:
   return (allowance.percentOfReading / 100) * Math.abs(trueAmperes) + (allowance.percentOfRange / 100) * rangeAmperes + allowance.amperes;
 }
 
+type MeterSpec = StageSpecOf<'meter'>;
 type RecordAllowance = Allowance & { measure: 'mean' | 'trueRms' | 'acRms'; meter: string };
 
 /** A statistic of less than a period is a matter of where the window begins. */
-function shortWindow(probe: Probe, meter: string, { name, current }: Scenario): string | null {
+function shortWindow(spec: MeterSpec | undefined, { name, current }: Scenario): string | null {
   const period = longestPeriodSeconds(current);
-  const spec = probe.chain.find((stage) => stage.stage === 'meter' && stage.name === meter);
-  if (period === null || spec?.stage !== 'meter') return null;
+  if (period === null || spec === undefined) return null;
   // a window that is meant to be a period may be off by rounding
   if (spec.window_ms / 1e3 >= period * (1 - 1e-6)) return null;
-  return `a window of meter "${meter}" (${timeText(spec.window_ms / 1e3)}) is shorter than a period of ` +
+  return `a window of meter "${spec.name}" (${timeText(spec.window_ms / 1e3)}) is shorter than a period of ` +
     `the current of "${name}" (${timeText(period)})`;
 }
 
@@ -157,9 +157,9 @@ export class RecordError implements Measure {
   private readonly tooShort: string | null;
 
   constructor(private readonly requirement: RecordAllowance, private readonly probe: Probe, scenario: Scenario) {
-    this.tooShort = shortWindow(probe, requirement.meter, scenario);
-    const meter = probe.chain.find((stage) => stage.stage === 'meter' && stage.name === requirement.meter);
-    this.wantsCycles = meter?.stage === 'meter' && meter.cycles > 0;
+    const meter = probe.chain.find((stage): stage is MeterSpec => stage.stage === 'meter' && stage.name === requirement.meter);
+    this.tooShort = shortWindow(meter, scenario);
+    this.wantsCycles = meter !== undefined && meter.cycles > 0;
   }
 
   /** The worst error as a share of the true value there. */

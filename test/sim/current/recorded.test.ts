@@ -2,9 +2,9 @@
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { openCurrent, type CurrentSource } from '../../../sim/current/source.ts';
-import { CsvError } from '../../../sim/recorded/csv.ts';
 import type { CurrentSpec } from '../../../sim/probe/fields.ts';
 import { Folder } from '../recorded/folder.ts';
+import { faultOf } from '../recorded/fault.ts';
 
 const folder = new Folder();
 
@@ -22,16 +22,6 @@ function take(source: CurrentSource, count: number): number[] {
   source.next(amperes, count);
   source.close();
   return [...amperes];
-}
-
-function faultOf(action: () => unknown): CsvError {
-  try {
-    action();
-  } catch (error) {
-    if (error instanceof CsvError) return error;
-    throw error;
-  }
-  throw new Error('expected a CsvError, nothing was thrown');
 }
 
 describe('between rows', () => {

@@ -1,18 +1,7 @@
 import { describe, expect, test } from 'vitest';
-import { ProbeError, type Problem } from '../../../sim/probe/problem.ts';
-import { validate } from '../../../sim/probe/validate.ts';
 import { put } from './places.ts';
 import { switchedBias, tramDoor, type Loose } from './tram-door.ts';
-
-function problemsOf(given: unknown): Problem[] {
-  try {
-    validate(given);
-  } catch (error) {
-    if (error instanceof ProbeError) return error.problems;
-    throw error;
-  }
-  return [];
-}
+import { problemsOf } from './problems.ts';
 
 function changed(make: () => Loose, changes: Record<string, unknown>): Loose {
   const probe = make();

@@ -7,16 +7,7 @@ import { readAs } from '../../../sim/probe/reading.ts';
 import { validate } from '../../../sim/probe/validate.ts';
 import { at, put } from './places.ts';
 import { switchedBias, tramDoor } from './tram-door.ts';
-
-function problemsOf(given: unknown): Problem[] {
-  try {
-    validate(given);
-  } catch (error) {
-    if (error instanceof ProbeError) return error.problems;
-    throw error;
-  }
-  return [];
-}
+import { problemsOf } from './problems.ts';
 
 function deepFreeze<T>(tree: T): T {
   if (typeof tree === 'object' && tree !== null) {

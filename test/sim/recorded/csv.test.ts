@@ -3,9 +3,10 @@ import { setFlagsFromString } from 'node:v8';
 import { runInNewContext } from 'node:vm';
 import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
-import { columnUnit, CsvError, CsvReader, findColumn } from '../../../sim/recorded/csv.ts';
+import { columnUnit, CsvReader, findColumn } from '../../../sim/recorded/csv.ts';
 import { LONGEST_LINE } from '../../../sim/recorded/lines.ts';
 import { Folder } from './folder.ts';
+import { faultOf } from './fault.ts';
 
 const folder = new Folder();
 
@@ -19,16 +20,6 @@ function rowsOf(reader: CsvReader): number[][] {
 
 const read = (content: string | Uint8Array): number[][] => rowsOf(new CsvReader(folder.write('log.csv', content)));
 const open = (content: string | Uint8Array): CsvReader => new CsvReader(folder.write('log.csv', content));
-
-function faultOf(action: () => unknown): CsvError {
-  try {
-    action();
-  } catch (error) {
-    if (error instanceof CsvError) return error;
-    throw error;
-  }
-  throw new Error('expected a CsvError, nothing was thrown');
-}
 
 describe('the same rows in every dialect', () => {
   const rows = [[0, -1.5], [0.001, 2500], [0.0025, 0.125]];
